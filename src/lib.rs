@@ -3,3 +3,4 @@
 pub mod kernel;
 pub mod language;
 pub mod record;
+pub mod space;

@@ -34,6 +34,12 @@ impl Enclosure {
         upper: 1.0,
     };
 
+    /// Holds every probability: the answer when nothing is known.
+    pub const UNKNOWN: Self = Self {
+        lower: 0.0,
+        upper: 1.0,
+    };
+
     /// The lower end.
     pub fn lower(&self) -> f64 {
         self.lower
