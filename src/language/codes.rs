@@ -34,6 +34,7 @@ pub const CODES: &[(&str, &str)] = &[
         "an expression that YAML cut at a comma or bracket",
     ),
     ("not-a-number", "text where a number is due"),
+    ("not-utf-8", "a file that is not UTF-8 text"),
     ("not-whole", "a fraction where units are counted"),
     (
         "not-yet-derived",

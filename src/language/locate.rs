@@ -462,15 +462,27 @@ impl<'a> Builder<'a> {
             .iter()
             .take_while(|c| c.is_whitespace())
             .any(|c| *c == '\t');
-        let help = if tab {
-            "indent with spaces: YAML does not allow tabs there"
-        } else {
-            "look for a missing quote, colon or bracket here or on the line above; quote text that holds `: ` or ` #`"
-        };
         let code = if tab { "tab-indent" } else { "yaml-syntax" };
+        let help = if tab {
+            "indent with spaces: YAML does not allow tabs there".to_owned()
+        } else {
+            self.syntax_help(span)
+        };
         self.report(
             Diagnostic::error(code, span, format!("this is not YAML: {info}")).with_help(help),
         );
+    }
+
+    /// What most likely went wrong where the parser stumbled.
+    fn syntax_help(&self, span: Span) -> String {
+        match self.source.at(span.line, span.column) {
+            Some(sign @ ('>' | '|' | '@' | '`' | '%' | '&' | '*' | '!')) => {
+                format!("unquoted text cannot begin with `{sign}`: put it in double quotes")
+            }
+            Some(':') => "put text that holds a colon in double quotes".to_owned(),
+            Some(quote @ ('"' | '\'')) => format!("look for a `{quote}` that is not closed"),
+            _ => "look for a missing quote, colon or bracket here or on the line above".to_owned(),
+        }
     }
 
     fn report(&mut self, diagnostic: Diagnostic) {

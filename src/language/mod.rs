@@ -11,6 +11,7 @@ pub mod grid;
 pub mod locate;
 pub mod plan;
 pub mod read;
+pub mod render;
 pub mod scalar;
 pub mod schema;
 pub mod set;

@@ -7,8 +7,10 @@ use crate::language::diagnostic::{CautionGrade, Diagnostic, Located, Span};
 use crate::language::families;
 use crate::language::fields::Fields;
 use crate::language::grid;
-use crate::language::locate::{locate, shown};
-use crate::language::plan::{AcceptWhen, Characteristic, Decision, Plan, Requirement, WaivedRule};
+use crate::language::locate::{MOST_FINDINGS, locate, shown};
+use crate::language::plan::{
+    AcceptWhen, Characteristic, Decision, Plan, Requirement, Test, WaivedRule,
+};
 use crate::language::shape;
 use crate::language::source::Source;
 use crate::language::test_block;
@@ -57,7 +59,27 @@ pub fn read(text: &str) -> Reading {
     diagnostics.sort_by_key(|found| found.span);
     diagnostics.dedup();
     let plan = plan.filter(|_| !diagnostics.iter().any(Diagnostic::is_error));
+    cap(&mut diagnostics);
     Reading { plan, diagnostics }
+}
+
+/// Nobody reads more than [`MOST_FINDINGS`]; errors are kept before cautions.
+fn cap(diagnostics: &mut Vec<Diagnostic>) {
+    if diagnostics.len() <= MOST_FINDINGS {
+        return;
+    }
+    let beyond = diagnostics.len() - MOST_FINDINGS;
+    if diagnostics.iter().any(Diagnostic::is_error) {
+        diagnostics.retain(Diagnostic::is_error);
+    }
+    diagnostics.truncate(MOST_FINDINGS);
+    if let Some(last) = diagnostics.last().map(|found| found.span) {
+        let message = format!("there are at least {beyond} more findings");
+        diagnostics.push(
+            Diagnostic::error("too-many", last, message)
+                .with_help("mend these first, then check again"),
+        );
+    }
 }
 
 fn from_tree(text: &str, tree: &Node, fields: &mut Fields<'_>) -> Option<Plan> {
@@ -75,11 +97,11 @@ fn from_tree(text: &str, tree: &Node, fields: &mut Fields<'_>) -> Option<Plan> {
     let shape = shape::check(tree, fields.source, start, skip);
     fields.diagnostics.extend(shape);
     language_version(fields, tree.get("assize"));
-    let plan = if skip.is_some() {
-        None
-    } else {
-        values(text, tree, family, start, fields)
+    let test = match skip {
+        Some(_) => None,
+        None => test_block::test(fields, tree, family),
     };
+    let plan = values(text, tree, test, start, fields);
     if !fields.diagnostics.iter().any(Diagnostic::is_error)
         && let Err(disagreement) = yaml::agrees(text, tree, start)
     {
@@ -105,11 +127,11 @@ fn language_version(fields: &mut Fields<'_>, node: Option<&Node>) {
     }
 }
 
-/// Every block is read before anything is given up, so that all findings are reported.
+/// The plan around its test. Every block is read before anything is given up, so that all findings are reported.
 fn values(
     text: &str,
     tree: &Node,
-    family: Option<Located<String>>,
+    test: Option<Test>,
     start: Span,
     fields: &mut Fields<'_>,
 ) -> Option<Plan> {
@@ -122,7 +144,6 @@ fn values(
     fields.date(of("effective_date"), "the effective date");
     supersedes(fields, of("supersedes"), revision.as_ref());
     let characteristic = characteristic(fields, tree.get("characteristic"));
-    let test = test_block::test(fields, tree, family);
     let requirements = requirements(fields, tree.get("power"));
     let decision = decision(fields, tree.get("decision"));
     let power_at = grid::power_at(

@@ -44,13 +44,13 @@ impl<'a> Walk<'a> {
             match fitting {
                 Some(choice) => self.value(node, choice, name, named),
                 None if self.said_nothing(node, name, named) => {}
-                None => self.wrong_kind(node, name, "a number, a list or keys of its own"),
+                None => self.wrong_kind(node, name, named, "a number, a list or keys of its own"),
             }
         } else if let Some(properties) = definition.get("properties").and_then(Value::as_object) {
             match &node.kind {
                 Kind::Mapping(_) => self.mapping(node, definition, properties, name, named),
                 _ if self.said_nothing(node, name, named) => {}
-                _ => self.wrong_kind(node, name, "keys of its own, indented below it"),
+                _ => self.wrong_kind(node, name, named, "keys of its own, indented below it"),
             }
         } else if let Some(item) = definition.get("items") {
             match &node.kind {
@@ -60,7 +60,7 @@ impl<'a> Walk<'a> {
                     }
                 }
                 _ if self.said_nothing(node, name, named) => {}
-                _ => self.wrong_kind(node, name, "a list, each entry after a `-`"),
+                _ => self.wrong_kind(node, name, named, "a list, each entry after a `-`"),
             }
         } else {
             self.leaf(node, schema, kind, name, named);
@@ -186,7 +186,7 @@ impl<'a> Walk<'a> {
                     .with_help("put the text in double quotes"),
                 );
             } else {
-                self.wrong_kind(node, name, due);
+                self.wrong_kind(node, name, named, due);
             }
             return;
         };
@@ -220,7 +220,10 @@ impl<'a> Walk<'a> {
     /// Reports a value that is empty, or a null word; true if it is.
     fn said_nothing(&mut self, node: &Node, name: &str, named: Span) -> bool {
         let (empty, span) = match &node.kind {
-            Kind::Scalar { text, .. } if text.is_empty() => (true, named),
+            Kind::Scalar {
+                text,
+                style: Style::Plain,
+            } if text.is_empty() => (true, named),
             Kind::Scalar { .. } => (node.given().is_none(), node.span),
             Kind::Sequence(items) => (items.is_empty(), node.span),
             _ => (false, node.span),
@@ -234,14 +237,19 @@ impl<'a> Walk<'a> {
         empty
     }
 
-    fn wrong_kind(&mut self, node: &Node, name: &str, due: &str) {
+    fn wrong_kind(&mut self, node: &Node, name: &str, named: Span, due: &str) {
         let is = match node.kind {
             Kind::Mapping(_) => "keys and values",
             Kind::Sequence(_) => "a list",
             _ => "a single text",
         };
+        let span = if node.span.line == named.line {
+            node.span
+        } else {
+            named
+        };
         self.found.push(
-            Diagnostic::error("wrong-kind", node.span, format!("{name} is {is} here"))
+            Diagnostic::error("wrong-kind", span, format!("{name} is {is} here"))
                 .with_help(format!("{name} wants {due}")),
         );
     }

@@ -1,6 +1,26 @@
 //! The plan text with quick access by line and column, both counted in characters from one.
 
-use crate::language::diagnostic::Span;
+use crate::language::diagnostic::{Diagnostic, Span};
+
+/// The text of a file; an error at the first byte that is not UTF-8.
+pub fn decode(bytes: &[u8]) -> Result<&str, Diagnostic> {
+    std::str::from_utf8(bytes).map_err(|error| {
+        let before = String::from_utf8_lossy(&bytes[..error.valid_up_to()]);
+        let line = before.matches('\n').count() + 1;
+        let column = before.chars().rev().take_while(|c| *c != '\n').count() + 1;
+        let span = Span {
+            line,
+            column,
+            width: 1,
+        };
+        Diagnostic::error(
+            "not-utf-8",
+            span,
+            "this file is not UTF-8 text from here on",
+        )
+        .with_help("save it as UTF-8 in your editor")
+    })
+}
 
 /// The characters of a text and where its lines begin.
 pub struct Source {
@@ -91,5 +111,48 @@ impl Source {
             column: at - self.line_starts[line - 1] + 1,
             width: 1,
         })
+    }
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+
+    #[test]
+    fn lines_and_columns_count_characters() {
+        let source = Source::new("a: é滅x\r\nb\n");
+        assert_eq!(source.line_count(), 2);
+        assert_eq!(source.at(1, 6), Some('x'));
+        assert_eq!(source.at(1, 7), None);
+        assert_eq!(source.line(2), ['b']);
+        assert_eq!(source.line(3), []);
+        assert_eq!(Source::new("").line_count(), 1);
+    }
+
+    #[test]
+    fn spans_are_cut_to_the_text() {
+        let source = Source::new("abc\nde\n");
+        let clip = |line, column, width| {
+            let span = source.clip(Span {
+                line,
+                column,
+                width,
+            });
+            (span.line, span.column, span.width)
+        };
+        assert_eq!(clip(1, 2, 9), (1, 2, 2));
+        assert_eq!(clip(1, 9, 1), (1, 4, 1));
+        assert_eq!(clip(7, 1, 1), (2, 3, 1));
+        assert_eq!(clip(0, 0, 0), (1, 1, 1));
+    }
+
+    #[test]
+    fn bytes_that_are_no_text_are_located() {
+        let fault = decode(b"plan: 1\nid: \xff").unwrap_err();
+        assert_eq!(
+            (fault.code, fault.span.line, fault.span.column),
+            ("not-utf-8", 2, 5)
+        );
+        assert!(decode("é".as_bytes()).is_ok());
     }
 }

@@ -54,11 +54,20 @@ impl<'a> Parser<'a> {
                 ))
             }
             Kind::Comma => Err(self.here("a comma cannot join comparisons", "write `and` or `or`")),
+            Kind::Name(_) if self.after_number() => Err(self.here(
+                format!("`{}` stands right behind a number", self.written()),
+                "the only units are `%` and `ppm`; write a product with `*`, and join comparisons with `and` or `or`",
+            )),
             _ => Err(self.here(
                 format!("`{}` was not expected here", self.written()),
                 "join comparisons with `and` or `or`",
             )),
         }
+    }
+
+    fn after_number(&self) -> bool {
+        let before = self.at.checked_sub(1).and_then(|at| self.tokens.get(at));
+        matches!(before.map(|token| &token.kind), Some(Kind::Number(_)))
     }
 
     fn any(&mut self) -> Parsed<SetExpression> {
@@ -167,6 +176,12 @@ impl<'a> Parser<'a> {
             return self.here(
                 format!("`{word}` is not a word of this language"),
                 "write comparisons, e.g. `0.01 <= p <= 0.05` or `p = 0.01 or p = 0.05`",
+            );
+        }
+        if *self.peek() == Kind::Close {
+            return self.here(
+                "a comparison is missing before this parenthesis",
+                "parentheses go around comparisons; write sides without them, e.g. `p1 - p2 <= 0.1`",
             );
         }
         let mut wrong = self.here(
