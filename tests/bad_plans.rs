@@ -3,6 +3,8 @@
 //! All errors must be expected and all that is expected must be found. Cautions are compared only where a plan expects
 //! them, since every short plan leaves something out that a good record should have.
 
+#![allow(clippy::unwrap_used)]
+
 use std::fs;
 use std::path::PathBuf;
 

@@ -22,13 +22,18 @@ pub const CODES: &[(&str, &str)] = &[
         "key-not-a-word",
         "a key that is missing, or a list or mapping",
     ),
-    ("key-not-for-family", "a key that belongs to another family"),
+    (
+        "key-of-another-family",
+        "a key that belongs to another family",
+    ),
     (
         "language-version",
         "a version of the language that is not known",
     ),
     ("merge-key", "a YAML merge key"),
     ("missing-key", "a key that must be there"),
+    ("missing-lot-size", "a lot whose size is not stated"),
+    ("missing-sample-size", "nothing says when inspection ends"),
     (
         "needs-quotes",
         "an expression that YAML cut at a comma or bracket",

@@ -101,7 +101,11 @@ fn from_tree(text: &str, tree: &Node, fields: &mut Fields<'_>) -> Option<Plan> {
         Some(_) => None,
         None => test_block::test(fields, tree, family),
     };
-    let plan = values(text, tree, test, start, fields);
+    let requirements = match skip {
+        Some(_) => Vec::new(),
+        None => requirements(fields, tree.get("power")),
+    };
+    let plan = values(text, tree, (test, requirements), start, fields);
     if !fields.diagnostics.iter().any(Diagnostic::is_error)
         && let Err(disagreement) = yaml::agrees(text, tree, start)
     {
@@ -131,7 +135,7 @@ fn language_version(fields: &mut Fields<'_>, node: Option<&Node>) {
 fn values(
     text: &str,
     tree: &Node,
-    test: Option<Test>,
+    (test, requirements): (Option<Test>, Vec<Requirement>),
     start: Span,
     fields: &mut Fields<'_>,
 ) -> Option<Plan> {
@@ -144,7 +148,6 @@ fn values(
     fields.date(of("effective_date"), "the effective date");
     supersedes(fields, of("supersedes"), revision.as_ref());
     let characteristic = characteristic(fields, tree.get("characteristic"));
-    let requirements = requirements(fields, tree.get("power"));
     let decision = decision(fields, tree.get("decision"));
     let power_at = grid::power_at(
         fields,

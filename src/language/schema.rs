@@ -1,5 +1,7 @@
 //! The plan language as JSON Schema 2020-12, derived from the document's types.
 
+use std::sync::LazyLock;
+
 use schemars::Schema;
 use schemars::generate::SchemaSettings;
 use schemars::transform::{Transform, transform_subschemas};
@@ -7,8 +9,20 @@ use serde_json::Value;
 
 use crate::language::document::Document;
 
+/// The schema, made once.
+static SCHEMA: LazyLock<Value> = LazyLock::new(make);
+
 /// The schema of a plan. Scalars accept what an editor's YAML reader makes of them.
 pub fn json_schema() -> Value {
+    SCHEMA.clone()
+}
+
+/// The same without a copy.
+pub fn shared() -> &'static Value {
+    &SCHEMA
+}
+
+fn make() -> Value {
     let mut schema = SchemaSettings::draft2020_12()
         .with_transform(NoNulls)
         .into_generator()

@@ -5,21 +5,21 @@ use serde_json::{Map, Value};
 
 use crate::language::diagnostic::{CautionGrade, Diagnostic, Span};
 use crate::language::locate::shown;
-use crate::language::schema::json_schema;
+use crate::language::schema;
 use crate::language::source::Source;
 use crate::language::suggestion::{nearest, one_of};
 use crate::language::tree::{Kind, Node, Style};
 
 /// Checks a tree against the plan language. A block named in `skip` is left alone.
 pub fn check(tree: &Node, source: &Source, start: Span, skip: Option<&str>) -> Vec<Diagnostic> {
-    let schema = json_schema();
+    let schema = schema::shared();
     let mut walk = Walk {
-        schema: &schema,
+        schema,
         source,
         skip,
         found: Vec::new(),
     };
-    walk.value(tree, &schema, "the plan", start);
+    walk.value(tree, schema, "the plan", start);
     walk.found
 }
 

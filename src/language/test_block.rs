@@ -106,26 +106,27 @@ fn keys_of_family(fields: &mut Fields<'_>, block: &Node, family: &str, span: Spa
     let has_size = ["sample_size", "stages", "sequential"]
         .iter()
         .any(|key| block.get(key).is_some());
-    let mut needs = |key: &str, why: &str| {
-        fields.error(
-            "missing-key",
-            span,
-            format!("`{key}` is missing in `test`"),
-            why,
-        );
+    let mut needs = |code, key: &str, why: &str| {
+        fields.error(code, span, format!("`{key}` is missing in `test`"), why);
     };
     if family == "negative_binomial" {
         if block.get("stop_at").is_none() {
             needs(
+                "missing-sample-size",
                 "stop_at",
                 "inspection of a `negative_binomial` plan ends at a number of nonconforming units: add `stop_at: {nonconforming: 3}`",
             );
         }
     } else if !has_size {
-        needs("sample_size", "give a number, or `smallest`");
+        needs(
+            "missing-sample-size",
+            "sample_size",
+            "give a number, or `smallest`",
+        );
     }
     if family == "hypergeometric" && block.get("lot_size").is_none() {
         needs(
+            "missing-lot-size",
             "lot_size",
             "a `hypergeometric` plan is about one lot: say how many units it has",
         );
@@ -165,7 +166,7 @@ fn keys_of_family(fields: &mut Fields<'_>, block: &Node, family: &str, span: Spa
     for (key, belongs, why) in misplaced {
         if let (Some(entry), false) = (block.entry(key), belongs) {
             fields.error(
-                "key-not-for-family",
+                "key-of-another-family",
                 entry.key.span,
                 format!("`{key}` does not belong to the family `{family}`"),
                 why,
