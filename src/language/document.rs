@@ -58,16 +58,20 @@ pub struct Document {
 #[serde(deny_unknown_fields)]
 pub struct Identity {
     /// Plan number: letters, digits, `.`, `_`, `-`; at most 64 characters. It names the files of the report.
+    #[schemars(extend("pattern" = "^[A-Za-z0-9_][A-Za-z0-9._-]{0,63}$"))]
     pub id: Scalar,
     /// Revision: the same characters as the plan number.
+    #[schemars(extend("pattern" = "^[A-Za-z0-9_][A-Za-z0-9._-]{0,63}$"))]
     pub revision: Scalar,
     /// Title in a few words.
     pub title: Prose,
     /// Why this test exists and what depends on it. CommonMark; raw HTML is shown as text.
     pub purpose: Option<Prose>,
     /// Date of the plan, year-month-day.
+    #[schemars(extend("pattern" = "^[0-9]{4}-[0-9]{2}-[0-9]{2}$"))]
     pub date: Option<Scalar>,
     /// Date from which the plan is in force, year-month-day.
+    #[schemars(extend("pattern" = "^[0-9]{4}-[0-9]{2}-[0-9]{2}$"))]
     pub effective_date: Option<Scalar>,
     /// Who wrote the plan.
     pub prepared_by: Option<Prose>,

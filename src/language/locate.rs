@@ -147,6 +147,7 @@ struct Key(Option<Located<String>>);
 struct Builder<'a> {
     source: &'a Source,
     diagnostics: Vec<Diagnostic>,
+    errors: usize,
     open: Vec<Open>,
     root: Option<Node>,
 }
@@ -156,6 +157,7 @@ impl<'a> Builder<'a> {
         Self {
             source,
             diagnostics,
+            errors: 0,
             open: Vec::new(),
             root: None,
         }
@@ -186,7 +188,7 @@ impl<'a> Builder<'a> {
                     return None;
                 }
             }
-            if !self.take(event, place) || self.diagnostics.len() >= MOST_FINDINGS {
+            if !self.take(event, place) || self.errors >= MOST_FINDINGS {
                 return None;
             }
         }
@@ -486,6 +488,7 @@ impl<'a> Builder<'a> {
     }
 
     fn report(&mut self, diagnostic: Diagnostic) {
+        self.errors += 1;
         self.diagnostics.push(diagnostic);
     }
 

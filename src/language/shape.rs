@@ -190,8 +190,8 @@ impl<'a> Walk<'a> {
             }
             return;
         };
-        if kind == "Prose" && *style == Style::Plain {
-            self.comment_cut(node, name);
+        if *style == Style::Plain {
+            self.comment_cut(node, name, kind == "Prose");
         }
         let words: Vec<&str> = schema
             .get("enum")
@@ -254,17 +254,18 @@ impl<'a> Walk<'a> {
         );
     }
 
-    /// YAML takes ` #` in unquoted text for a comment, and the rest of the sentence is gone without a word. A comment
-    /// that is set off by two blanks and begins with one (`text  # why`) is meant as one and draws no caution.
-    fn comment_cut(&mut self, node: &Node, name: &str) {
+    /// YAML takes ` #` in unquoted text for a comment, and the rest of the sentence is gone without a word. In prose a
+    /// comment that is set off by two blanks and begins with one (`text  # why`) is meant as one; behind a number, a word
+    /// or an expression only `#` with something right behind it (`TP-7 #3`) looks like a part of the value.
+    fn comment_cut(&mut self, node: &Node, name: &str, prose: bool) {
         let line = self.source.line(node.end_line);
         let after = line.get(node.end_column - 1..).unwrap_or(&[]);
         let blanks = after.iter().take_while(|c| c.is_whitespace()).count();
         if blanks == 0 || after.get(blanks) != Some(&'#') {
             return;
         }
-        let set_off = blanks > 1 && after.get(blanks + 1).is_none_or(|c| c.is_whitespace());
-        if set_off {
+        let begins_with_blank = after.get(blanks + 1).is_none_or(|c| c.is_whitespace());
+        if begins_with_blank && (blanks > 1 || !prose) {
             return;
         }
         let span = Span {

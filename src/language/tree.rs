@@ -91,27 +91,35 @@ impl Node {
         }
     }
 
-    /// Where a stretch of a scalar's text stands in the file: exact when the scalar is on one line and written without
-    /// escapes, else the place where the scalar begins.
+    /// Where a stretch of a scalar's text stands in the file: exact where the text stands there as it is written, else
+    /// (escapes, folded lines) the place where the scalar begins.
     pub fn place(&self, source: &Source, start: usize, width: usize) -> Span {
         let Kind::Scalar { text, style } = &self.kind else {
             return self.span;
         };
-        let opening = match style {
-            Style::Plain => 0,
-            Style::Quoted => 1,
-            Style::Block => return self.span,
+        let characters: Vec<char> = text.chars().collect();
+        let start = start.min(characters.len());
+        let end = (start + width).min(characters.len());
+        let before = &characters[..start];
+        let (row, row_start) = match style {
+            Style::Block => (
+                before.iter().filter(|c| **c == '\n').count(),
+                before
+                    .iter()
+                    .rposition(|c| *c == '\n')
+                    .map_or(0, |at| at + 1),
+            ),
+            Style::Plain | Style::Quoted => (0, 0),
         };
-        let from = self.span.column - 1 + opening;
-        let written = source.line(self.span.line).get(from..).unwrap_or(&[]);
-        let same = text.chars().count() <= written.len()
-            && text.chars().zip(written).all(|(a, b)| a == *b);
-        if !same {
+        let margin = self.span.column - 1 + usize::from(*style == Style::Quoted);
+        let line = self.span.line + row;
+        let written = source.line(line).get(margin..).unwrap_or(&[]);
+        if !written.starts_with(&characters[row_start..end]) {
             return self.span;
         }
         source.clip(Span {
-            line: self.span.line,
-            column: from + start + 1,
+            line,
+            column: margin + start - row_start + 1,
             width: width.max(1),
         })
     }

@@ -17,6 +17,9 @@ use crate::language::set::SetExpression;
 
 pub use parser::MOST_LEVELS;
 
+/// The longest set expression.
+const MOST_CHARACTERS: usize = 10_000;
+
 /// What is wrong with an expression, and where in its text: counted in characters from zero.
 #[derive(Clone, Debug, PartialEq, Eq)]
 pub struct Fault {
@@ -39,6 +42,17 @@ pub fn parse(
     text: &str,
     place: &dyn Fn(usize, usize) -> Span,
 ) -> Result<SetExpression, Box<Fault>> {
+    let length = text.chars().count();
+    if length > MOST_CHARACTERS {
+        return Err(fault(
+            MOST_CHARACTERS,
+            1,
+            format!(
+                "a set expression has at most {MOST_CHARACTERS} characters, and this one has {length}"
+            ),
+            "write the set with fewer intervals",
+        ));
+    }
     let tokens = lexer::tokens(text)?;
     parser::Parser::new(text, tokens, place).whole()
 }
