@@ -7,3 +7,4 @@ pub mod exact_sum;
 pub mod law;
 pub mod ratio_sum;
 pub mod region;
+pub mod second_route;

@@ -114,6 +114,27 @@ impl Region {
         Self { ranges: gaps }
     }
 
+    /// The set as an expression in a statistic whose outcomes are `low..=high` (or without end).
+    pub fn in_words(&self, statistic: &str, (low, high): (u64, Option<u64>)) -> String {
+        let cut = self.within(low, high);
+        if cut.is_empty() {
+            return "none".to_owned();
+        }
+        let parts: Vec<String> = cut
+            .ranges
+            .iter()
+            .map(|range| match (range.from == low, range.to) {
+                (true, to) if to == high => format!("{statistic} >= {low}"),
+                (true, Some(to)) => format!("{statistic} <= {to}"),
+                (false, to) if to == high => format!("{statistic} >= {}", range.from),
+                (false, Some(to)) if to == range.from => format!("{statistic} = {to}"),
+                (false, Some(to)) => format!("{} <= {statistic} <= {to}", range.from),
+                (_, None) => format!("{statistic} >= {}", range.from),
+            })
+            .collect();
+        parts.join(" or ")
+    }
+
     /// What of it lies in `low..=high`; the end stays open where the support has none.
     pub fn within(&self, low: u64, high: Option<u64>) -> Self {
         let cut = self.ranges.iter().map(|range| Range {

@@ -1,0 +1,136 @@
+//! Double entry: every printed probability is computed again by an independent route.
+
+use std::collections::BTreeSet;
+
+use crate::kernel::enclosure::Enclosure;
+use crate::kernel::region::Region;
+use crate::kernel::second_route::TOLERANCE;
+use crate::language::plan::AcceptWhen;
+use crate::space::Value;
+
+use super::operating::Operating;
+use super::solution::Solution;
+
+/// Probabilities below this are compared by size only: doubles end near it.
+const SMALLEST: f64 = 1e-290;
+
+/// What the second computation of every figure gave.
+#[derive(Clone, Debug, Default)]
+pub struct DoubleEntry {
+    /// How many figures were computed twice.
+    pub figures: u64,
+    /// The largest relative difference between the routes.
+    pub largest_difference: f64,
+    /// The widest enclosure, relative to its upper end.
+    pub widest: f64,
+    /// Names of the second routes that were used.
+    pub routes: BTreeSet<&'static str>,
+    /// The first figure on which the routes disagree beyond the tolerance.
+    pub disagreement: Option<String>,
+}
+
+impl DoubleEntry {
+    /// Computes every figure of a solution again.
+    pub fn of(operating: &Operating<'_>, solution: &Solution) -> Self {
+        let mut entry = Self::default();
+        let region = &solution.region;
+        let problem = operating.problem;
+        let observed = |at: &Value, value: Enclosure| {
+            // Of the images of a point, the one the figure was computed at.
+            let (least, most) = problem.observation.images(at);
+            let distance = |image: &Value| {
+                (operating.rejection(region, image).middle() - value.middle()).abs()
+            };
+            if distance(&most) < distance(&least) {
+                most
+            } else {
+                least
+            }
+        };
+        for placed in std::iter::once(&solution.size).chain(
+            solution
+                .requirements
+                .iter()
+                .map(|outcome| &outcome.attained),
+        ) {
+            entry.rejection(
+                operating,
+                region,
+                &observed(&placed.at, placed.value),
+                placed.value,
+            );
+        }
+        for point in &solution.power {
+            let image = observed(&point.at, point.rejection);
+            entry.rejection(operating, region, &image, point.rejection);
+            if problem.accept_when == AcceptWhen::NullRetained {
+                entry.retention(operating, region, &image, point.retention);
+            }
+        }
+        entry
+    }
+
+    fn rejection(
+        &mut self,
+        operating: &Operating<'_>,
+        region: &Region,
+        observed: &Value,
+        first: Enclosure,
+    ) {
+        let single = self.second(operating, region, observed);
+        let mut rest = 1.0;
+        let mut sum = 0.0;
+        for _ in 0..operating.problem.tries {
+            sum += rest;
+            rest *= 1.0 - single;
+        }
+        self.compare(first, single * sum, observed);
+    }
+
+    fn retention(
+        &mut self,
+        operating: &Operating<'_>,
+        region: &Region,
+        observed: &Value,
+        first: Enclosure,
+    ) {
+        let single = self.second(operating, &region.complement(), observed);
+        let second = (1..operating.problem.tries).fold(single, |product, _| product * single);
+        self.compare(first, second, observed);
+    }
+
+    fn second(&mut self, operating: &Operating<'_>, event: &Region, observed: &Value) -> f64 {
+        let figure = operating
+            .problem
+            .family
+            .second_route(observed, &operating.amount, event);
+        self.routes.insert(figure.route);
+        figure.value
+    }
+
+    fn compare(&mut self, first: Enclosure, second: f64, at: &Value) {
+        self.figures += 1;
+        self.widest = self.widest.max(first.relative_width());
+        let scale = first.middle().max(SMALLEST);
+        let outside = (first.lower() - second)
+            .max(second - first.upper())
+            .max(0.0);
+        let difference = if second.is_finite() {
+            outside.max((second - first.middle()).abs()) / scale
+        } else {
+            f64::INFINITY
+        };
+        let difference = if first.upper() < SMALLEST && second < SMALLEST {
+            0.0
+        } else {
+            difference
+        };
+        self.largest_difference = self.largest_difference.max(difference);
+        if difference > TOLERANCE && self.disagreement.is_none() {
+            self.disagreement = Some(format!(
+                "at {at}: {:e} by the first route, {second:e} by the second",
+                first.middle()
+            ));
+        }
+    }
+}

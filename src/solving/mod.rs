@@ -1,0 +1,40 @@
+//! From problem to solution: region, size, power, envelope, sample size, each with its proof.
+
+mod acceptance;
+mod double_entry;
+mod envelope;
+mod extremum;
+mod general;
+mod judgement;
+mod obstacle;
+mod operating;
+mod region;
+mod sample_size;
+mod solution;
+mod tail_bound;
+mod two_sided;
+
+pub use double_entry::DoubleEntry;
+pub use envelope::envelope;
+pub use extremum::{Extremum, Goal, extremum};
+pub use obstacle::Obstacle;
+pub use operating::Operating;
+pub use region::{Form, derive, form_of};
+pub use sample_size::{Search, smallest};
+pub use solution::{Optimality, Placed, PowerPoint, RequirementOutcome, Solution, solve};
+
+/// Where long work says how far it is. Pure callers use [`Silent`].
+pub trait Progress: Sync {
+    /// A step of something is done; `false` asks to stop.
+    fn step(&self, what: &str, done: u64, of: Option<u64>) -> bool;
+}
+
+/// Says nothing and never stops.
+#[derive(Clone, Copy, Debug, Default)]
+pub struct Silent;
+
+impl Progress for Silent {
+    fn step(&self, _what: &str, _done: u64, _of: Option<u64>) -> bool {
+        true
+    }
+}

@@ -1,0 +1,31 @@
+//! Why a problem has no solution.
+
+use crate::kernel::exact::Exact;
+
+/// What stands between a problem and its solution.
+#[derive(Clone, Debug, PartialEq)]
+pub enum Obstacle {
+    /// No non-empty region has a size of at most the level at this amount.
+    LevelUnreachable {
+        /// The smallest size that a non-empty region has here.
+        smallest: f64,
+        /// The smallest amount at which the level can be reached, if one was found.
+        needed: Option<Exact>,
+    },
+    /// No amount up to the limit meets level and requirements.
+    SearchExhausted {
+        /// The largest amount tried.
+        limit: Exact,
+        /// What still failed there.
+        failing: String,
+    },
+    /// Enclosures and exact arithmetic within its budget leave the question open.
+    NotProved {
+        /// The open question.
+        question: String,
+    },
+    /// The region would have no largest count.
+    NoLargestRegion,
+    /// The caller asked to stop.
+    Stopped,
+}

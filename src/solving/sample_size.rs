@@ -1,0 +1,524 @@
+//! The smallest amount of inspection that meets the level and every requirement, the amount from which on every larger
+//! one does too, and why one less fails.
+
+use crate::family::AmountKind;
+use crate::kernel::exact::Exact;
+use crate::kernel::region::Region;
+use crate::problem::{Problem, Requirement, Shape};
+use crate::space::{LineSet, Value};
+
+use super::Progress;
+use super::envelope::envelope;
+use super::extremum::{Extremum, Goal, extremum};
+use super::judgement::Level;
+use super::obstacle::Obstacle;
+use super::operating::{Operating, last_true};
+use super::region::{Form, derive, form_of};
+use super::tail_bound::surely_enough;
+
+/// What the search found.
+#[derive(Clone, Debug, PartialEq)]
+pub struct Search {
+    /// The first amount that will do.
+    pub smallest: Exact,
+    /// From here on every larger amount will do.
+    pub every_from: Option<Exact>,
+    /// `every_from` was checked up to here only.
+    pub proved_to: Option<Exact>,
+    /// How `every_from` was shown.
+    pub how: &'static str,
+    /// Why one less fails.
+    pub one_less: String,
+}
+
+const BY_CHERNOFF: &str =
+    "every amount up to a bound of Chernoff's was checked; beyond it the bound proves it";
+const BY_WHOLE_LOT: &str = "every sample size up to the whole lot was checked";
+const BY_MONOTONICITY: &str = "the size of the region falls as the amount grows";
+const BY_TRIAL: &str = "every amount up to the stated one was checked";
+
+/// Most amounts tried one by one.
+const MOST_TRIALS: u64 = 100_000;
+/// Most amounts tried beyond the first that will do.
+const TRIALS_BEYOND: u64 = 2_000;
+
+/// Finds the smallest multiple of the step that meets the level and every requirement.
+pub fn smallest(
+    problem: &Problem,
+    step: &Exact,
+    progress: &dyn Progress,
+) -> Result<Search, Obstacle> {
+    let amounts = Amounts {
+        problem,
+        step,
+        most: problem
+            .family
+            .most()
+            .checked_div(step)
+            .and_then(|most| most.floor().to_u64())
+            .unwrap_or(1),
+        progress,
+    };
+    let counted = problem.family.registration().amount_kind != AmountKind::Nonconforming;
+    match (&problem.given_region, &problem.shape) {
+        (Some(region), _) => amounts.for_region(region),
+        (None, Shape::Below { end }) if counted => amounts.by_threshold(end, true),
+        (None, Shape::Above { end }) if counted => amounts.by_threshold(end, false),
+        _ => amounts.by_trial(),
+    }
+}
+
+/// How a requirement fares.
+pub fn attained(
+    operating: &Operating<'_>,
+    region: &Region,
+    requirement: &Requirement,
+) -> Result<(Extremum, bool), Obstacle> {
+    let observed = operating.problem.observation.image(&requirement.set);
+    let infimum = extremum(operating, region, &observed, Goal::Infimum);
+    let level = Level::new(requirement.at_least.clone());
+    let met = if infimum.value.lower() > level.above() {
+        true
+    } else if infimum.value.upper() < level.above().next_down().next_down() {
+        false
+    } else {
+        operating.is_at_least(region, &infimum.at, &level)?
+    };
+    Ok((infimum, met))
+}
+
+/// Whether the size of a region is at most the level.
+pub fn within_level(
+    operating: &Operating<'_>,
+    region: &Region,
+) -> Result<(Extremum, bool), Obstacle> {
+    let problem = operating.problem;
+    let null = problem.observation.image(&problem.null);
+    let size = extremum(operating, region, &null, Goal::Supremum);
+    let alpha = operating.alpha();
+    let within = if size.value.upper() < alpha.above().next_down().next_down() {
+        true
+    } else if size.value.lower() > alpha.above() {
+        false
+    } else {
+        operating.is_at_most(region, &size.at, &alpha)?
+    };
+    Ok((size, within))
+}
+
+struct Amounts<'a> {
+    problem: &'a Problem,
+    step: &'a Exact,
+    /// Largest multiple of the step.
+    most: u64,
+    progress: &'a dyn Progress,
+}
+
+/// The multiples of the step that share a threshold of the derived tail, and those of them that will do.
+struct Segment {
+    from: u64,
+    to: u64,
+    will_do: Option<(u64, u64)>,
+}
+
+impl<'a> Amounts<'a> {
+    fn amount(&self, index: u64) -> Exact {
+        &Exact::from(index) * self.step
+    }
+
+    fn at(&self, index: u64) -> Operating<'a> {
+        Operating::new(self.problem, self.amount(index))
+    }
+
+    fn tell(&self, what: &str, done: u64, of: Option<u64>) -> Result<(), Obstacle> {
+        if self.progress.step(what, done, of) {
+            Ok(())
+        } else {
+            Err(Obstacle::Stopped)
+        }
+    }
+
+    /// Why an amount will not do; `None` if it will.
+    fn failure(&self, index: u64) -> Result<Option<String>, Obstacle> {
+        let operating = self.at(index);
+        let amount = self.amount(index);
+        let region = match &self.problem.given_region {
+            Some(region) => {
+                let (size, within) = within_level(&operating, region)?;
+                return Ok((!within).then(|| {
+                    format!(
+                        "at {amount} the size of the given region is {:.6}, above {}",
+                        size.value.lower(),
+                        self.problem.alpha
+                    )
+                }));
+            }
+            None => derive(&operating)?,
+        };
+        if region.is_empty() {
+            return Ok(Some(format!(
+                "at {amount} no region that rejects anything has a size of at most {}",
+                self.problem.alpha
+            )));
+        }
+        for requirement in &self.problem.requirements {
+            let (infimum, met) = attained(&operating, &region, requirement)?;
+            if !met {
+                let family = &self.problem.family;
+                return Ok(Some(format!(
+                    "at {amount} the region {} has power {:.6} where {}, and {} is required",
+                    region.in_words(family.registration().statistic, operating.outcomes()),
+                    infimum.value.lower(),
+                    requirement.set.in_words(family.parameter()),
+                    requirement.at_least
+                )));
+            }
+        }
+        Ok(None)
+    }
+
+    fn one_less(&self, smallest: u64) -> Result<String, Obstacle> {
+        if smallest <= 1 {
+            return Ok("nothing less can be inspected".to_owned());
+        }
+        Ok(self
+            .failure(smallest - 1)?
+            .unwrap_or_else(|| "one less would do".to_owned()))
+    }
+
+    fn found(
+        &self,
+        smallest: u64,
+        every_from: u64,
+        proved_to: Option<u64>,
+        how: &'static str,
+    ) -> Result<Search, Obstacle> {
+        Ok(Search {
+            smallest: self.amount(smallest),
+            every_from: Some(self.amount(every_from)),
+            proved_to: proved_to.map(|index| self.amount(index)),
+            how,
+            one_less: self.one_less(smallest)?,
+        })
+    }
+
+    fn exhausted(&self, limit: u64) -> Obstacle {
+        Obstacle::SearchExhausted {
+            limit: self.amount(limit),
+            failing: self
+                .failure(limit)
+                .ok()
+                .flatten()
+                .unwrap_or_else(|| "smaller amounts".to_owned()),
+        }
+    }
+
+    /// The first amount at which a given region's size is at most the level.
+    fn for_region(&self, region: &Region) -> Result<Search, Obstacle> {
+        let form = form_of(region, (0, None));
+        let least = self.least_for(region);
+        if form == Form::LowerTail {
+            let too_large = last_true(least, least, self.most, |index| {
+                within_level(&self.at(index), region).map(|(_, within)| !within)
+            })?;
+            let first = too_large.map_or(least, |index| index + 1);
+            if first > self.most {
+                return Err(self.exhausted(self.most));
+            }
+            return self.found(first, first, None, BY_MONOTONICITY);
+        }
+        let last = self.most.min(least + MOST_TRIALS);
+        for index in least..=last {
+            self.tell("sample sizes tried", index, None)?;
+            if self.failure(index)?.is_none() {
+                return Ok(Search {
+                    smallest: self.amount(index),
+                    every_from: None,
+                    proved_to: None,
+                    how: BY_TRIAL,
+                    one_less: self.one_less(index)?,
+                });
+            }
+        }
+        Err(self.exhausted(last))
+    }
+
+    /// The first amount under which the region holds a possible outcome and leaves one out.
+    fn least_for(&self, region: &Region) -> u64 {
+        let least = region.ranges().first().map_or(1, |range| range.from.max(1));
+        match self.problem.family.registration().amount_kind {
+            AmountKind::Units => least.min(self.most),
+            _ => 1,
+        }
+    }
+
+    /// One-sided nulls: for a fixed threshold size and power are monotone in the amount, so whole segments of amounts are
+    /// judged at once.
+    fn by_threshold(&self, end: &Value, lower: bool) -> Result<Search, Obstacle> {
+        let thresholds = Thresholds::new(self, end, lower);
+        let bound = thresholds.bound(self);
+        let limit = bound.map_or(self.most, |bound| bound.min(self.most));
+        let mut first = None;
+        let mut every_from = 1;
+        let mut segment = thresholds.first_segment()?;
+        let mut threshold = thresholds.first_threshold();
+        while segment.from <= limit {
+            self.tell("sample sizes judged", segment.from, Some(limit))?;
+            match segment.will_do {
+                Some((from, to)) => {
+                    first = first.or(Some(from));
+                    if from > segment.from {
+                        every_from = from;
+                    }
+                    if to < segment.to {
+                        every_from = to + 1;
+                    }
+                }
+                None if segment.from <= segment.to => every_from = segment.to + 1,
+                None => {}
+            }
+            if first.is_some() && self.problem.requirements.is_empty() {
+                break;
+            }
+            if segment.to >= self.most {
+                break;
+            }
+            threshold += 1;
+            segment = thresholds.next_segment(threshold, &segment)?;
+        }
+        let first = first.ok_or_else(|| self.exhausted(limit))?;
+        // Amounts that were passed over before the first threshold existed will not do.
+        let every_from = every_from.max(first);
+        if every_from > self.most {
+            return Ok(Search {
+                every_from: None,
+                ..self.found(first, first, None, BY_TRIAL)?
+            });
+        }
+        let how = match bound {
+            Some(_) => BY_CHERNOFF,
+            None => BY_WHOLE_LOT,
+        };
+        self.found(first, every_from, None, how)
+    }
+
+    /// All other nulls: from the first amount at which the envelope leaves hope, one by one.
+    fn by_trial(&self) -> Result<Search, Obstacle> {
+        let hopeless = last_true(1, 1, self.most, |index| self.is_hopeless(index))?;
+        let start = hopeless.map_or(1, |index| index + 1);
+        if start > self.most {
+            return Err(self.exhausted(self.most));
+        }
+        let last = self.most.min(start.saturating_add(MOST_TRIALS));
+        let mut first = None;
+        for index in start..=last {
+            self.tell("sample sizes tried", index, None)?;
+            if self.failure(index)?.is_none() {
+                first = Some(index);
+                break;
+            }
+        }
+        let first = first.ok_or_else(|| self.exhausted(last))?;
+        let proved_to = self
+            .most
+            .min(first.saturating_add(first.clamp(64, TRIALS_BEYOND)));
+        let mut every_from = first;
+        for index in first + 1..=proved_to {
+            self.tell("larger sample sizes tried", index, Some(proved_to))?;
+            if self.failure(index)?.is_some() {
+                every_from = index + 1;
+            }
+        }
+        let mut search = self.found(first, every_from.min(proved_to), Some(proved_to), BY_TRIAL)?;
+        if every_from > proved_to {
+            search.every_from = None;
+        }
+        Ok(search)
+    }
+
+    /// Whether not even the best randomised test has the required power: true up to some amount and never beyond,
+    /// because more observations can always be ignored.
+    fn is_hopeless(&self, index: u64) -> Result<bool, Obstacle> {
+        let operating = self.at(index);
+        for requirement in &self.problem.requirements {
+            for end in ends(&requirement.set) {
+                if let Some(best) = envelope(&operating, &end)?
+                    && best < requirement.at_least.to_f64().next_down()
+                {
+                    return Ok(true);
+                }
+            }
+        }
+        Ok(false)
+    }
+}
+
+fn ends(set: &LineSet) -> Vec<Value> {
+    set.pieces()
+        .iter()
+        .flat_map(|piece| [piece.low().at.clone(), piece.high().at.clone()])
+        .filter(|end| end.finite().is_some())
+        .collect()
+}
+
+/// A one-sided problem seen by the threshold of its tail.
+struct Thresholds<'a, 'b> {
+    amounts: &'a Amounts<'b>,
+    end: Value,
+    lower: bool,
+    alpha: Level,
+    /// Where each requirement's infimum is, as observed, and what is required there.
+    wanted: Vec<(Value, Level)>,
+}
+
+impl<'a, 'b> Thresholds<'a, 'b> {
+    fn new(amounts: &'a Amounts<'b>, end: &Value, lower: bool) -> Self {
+        let problem = amounts.problem;
+        let rising = amounts.at(1).is_rising();
+        let wanted = problem
+            .requirements
+            .iter()
+            .filter_map(|requirement| {
+                let observed = problem.observation.image(&requirement.set);
+                // The power of a tail is smallest at the end of the set that is nearest to the null.
+                let nearest = if rising == lower {
+                    observed.supremum()
+                } else {
+                    observed.infimum()
+                };
+                Some((nearest?.clone(), Level::new(requirement.at_least.clone())))
+            })
+            .collect();
+        Self {
+            amounts,
+            end: end.clone(),
+            lower,
+            alpha: Level::new(problem.alpha.clone()),
+            wanted,
+        }
+    }
+
+    /// An index from which on everything will do, by the tail bound.
+    fn bound(&self, amounts: &Amounts<'_>) -> Option<u64> {
+        let mut farthest = 1.0f64;
+        for (point, at_least) in &self.wanted {
+            let amount =
+                surely_enough(amounts.problem, &self.end, point, at_least.exact().to_f64())?;
+            farthest = farthest.max(amount / amounts.step.to_f64());
+        }
+        if self.wanted.is_empty() {
+            return None;
+        }
+        (farthest < 1e15).then_some(farthest as u64 + 1)
+    }
+
+    fn region(&self, threshold: u64) -> Region {
+        if self.lower {
+            Region::at_most(Some(threshold))
+        } else {
+            Region::at_least(Some(threshold))
+        }
+    }
+
+    fn fits(&self, threshold: u64, index: u64) -> Result<bool, Obstacle> {
+        self.amounts
+            .at(index)
+            .is_at_most(&self.region(threshold), &self.end, &self.alpha)
+    }
+
+    fn has_power(&self, threshold: u64, index: u64) -> Result<bool, Obstacle> {
+        let operating = self.amounts.at(index);
+        for (point, at_least) in &self.wanted {
+            if !operating.is_at_least(&self.region(threshold), point, at_least)? {
+                return Ok(false);
+            }
+        }
+        Ok(true)
+    }
+
+    fn first_threshold(&self) -> u64 {
+        u64::from(!self.lower)
+    }
+
+    fn first_segment(&self) -> Result<Segment, Obstacle> {
+        let threshold = self.first_threshold();
+        let from = if self.lower {
+            self.first_fitting(threshold, 1)?
+        } else {
+            1
+        };
+        self.segment(threshold, from)
+    }
+
+    fn next_segment(&self, threshold: u64, previous: &Segment) -> Result<Segment, Obstacle> {
+        self.segment(threshold, previous.to + 1)
+    }
+
+    /// Lower tails: the first index at which the threshold fits. One beyond the last index if none does.
+    fn first_fitting(&self, threshold: u64, start: u64) -> Result<u64, Obstacle> {
+        let most = self.amounts.most;
+        let too_early = last_true(start, 1, most, |index| {
+            self.fits(threshold, index).map(|fits| !fits)
+        })?;
+        Ok(too_early.map_or(1, |index| index + 1))
+    }
+
+    /// The segment of a threshold that begins at an index.
+    fn segment(&self, threshold: u64, from: u64) -> Result<Segment, Obstacle> {
+        let most = self.amounts.most;
+        if from > most {
+            return Ok(Segment {
+                from,
+                to: most,
+                will_do: None,
+            });
+        }
+        if self.lower {
+            let to = self.first_fitting(threshold + 1, from)? - 1;
+            if to < from {
+                return Ok(Segment {
+                    from,
+                    to: from - 1,
+                    will_do: None,
+                });
+            }
+            // Power falls as the amount grows: a head of the segment will do.
+            let last = last_true(from, from, to, |index| self.has_power(threshold, index))?;
+            return Ok(Segment {
+                from,
+                to,
+                will_do: last.map(|last| (from, last)),
+            });
+        }
+        let last = last_true(from, from, most, |index| self.fits(threshold, index))?;
+        let Some(to) = last else {
+            return Ok(Segment {
+                from,
+                to: from - 1,
+                will_do: None,
+            });
+        };
+        // A threshold beyond every outcome rejects nothing.
+        let possible = match self.amounts.problem.family.registration().amount_kind {
+            AmountKind::Units => from.max(threshold),
+            _ => from,
+        };
+        if possible > to {
+            return Ok(Segment {
+                from,
+                to,
+                will_do: None,
+            });
+        }
+        // Power grows with the amount: a tail of the segment will do.
+        let weak = last_true(possible, possible, to, |index| {
+            self.has_power(threshold, index).map(|enough| !enough)
+        })?;
+        let first = weak.map_or(possible, |index| index + 1);
+        Ok(Segment {
+            from,
+            to,
+            will_do: (first <= to).then_some((first, to)),
+        })
+    }
+}

@@ -1,0 +1,336 @@
+//! A whole solution: region, proved size, power with envelope, requirements, acceptance, sample size and double entry.
+
+use crate::kernel::enclosure::Enclosure;
+use crate::kernel::exact::Exact;
+use crate::kernel::region::Region;
+use crate::language::plan::{AcceptWhen, Tails};
+use crate::problem::{AmountRequest, Problem, Shape, default_points};
+use crate::space::{LineSet, Value};
+
+use super::Progress;
+use super::acceptance::accepted_with;
+use super::double_entry::DoubleEntry;
+use super::envelope::envelope;
+use super::extremum::{Extremum, Goal, extremum};
+use super::obstacle::Obstacle;
+use super::operating::Operating;
+use super::region::{Form, derive, form_of};
+use super::sample_size::{Search, attained, smallest, within_level};
+
+/// Acceptance probabilities at which the quality is reported.
+const ACCEPTED: [(&str, f64); 3] = [("0.95", 0.95), ("0.50", 0.5), ("0.10", 0.1)];
+
+/// A solved problem.
+#[derive(Clone, Debug)]
+pub struct Solution {
+    /// The amount of inspection.
+    pub amount: Exact,
+    /// Smallest and largest possible outcome.
+    pub outcomes: (u64, Option<u64>),
+    /// The critical region within the possible outcomes.
+    pub region: Region,
+    /// Its form.
+    pub form: Form,
+    /// In what sense it is best.
+    pub optimality: Optimality,
+    /// Its size.
+    pub size: Placed,
+    /// Whether the size is at most the level.
+    pub within_level: bool,
+    /// The power at the points of the report.
+    pub power: Vec<PowerPoint>,
+    /// How each requirement fares, in the order of the plan.
+    pub requirements: Vec<RequirementOutcome>,
+    /// Probability (as text) and parameter value at which lots are released with it.
+    pub acceptance: Vec<(&'static str, f64)>,
+    /// The search for the sample size, where one was asked for.
+    pub search: Option<Search>,
+    /// Size of one try, where several are allowed.
+    pub size_of_one_try: Option<Enclosure>,
+    /// The second computation of every figure.
+    pub double_entry: DoubleEntry,
+}
+
+/// An extremum with its place as a true parameter value.
+#[derive(Clone, Debug)]
+pub struct Placed {
+    /// The enclosure.
+    pub value: Enclosure,
+    /// Where it is attained or approached.
+    pub at: Value,
+    /// Whether the set holds that value.
+    pub attained: bool,
+    /// Why it is there.
+    pub how: String,
+}
+
+/// The power function at one point.
+#[derive(Clone, Debug)]
+pub struct PowerPoint {
+    /// The true parameter value.
+    pub at: Value,
+    /// Whether the null holds there.
+    pub in_null: bool,
+    /// Probability that the null is rejected: at its largest where the null holds, else at its smallest, over what
+    /// inspection may see.
+    pub rejection: Enclosure,
+    /// Probability that it is retained, at the same observed value.
+    pub retention: Enclosure,
+    /// Highest rejection probability of any test of the level.
+    pub envelope: Option<f64>,
+}
+
+/// How a requirement fares.
+#[derive(Clone, Debug)]
+pub struct RequirementOutcome {
+    /// The infimum of the power.
+    pub attained: Placed,
+    /// Whether it is at least what is required.
+    pub met: bool,
+}
+
+/// In what sense the region is best.
+#[derive(Clone, Debug)]
+pub struct Optimality {
+    /// The claim.
+    pub claim: &'static str,
+    /// The theorem.
+    pub theorem: String,
+    /// Among which tests and under which conditions.
+    pub scope: String,
+}
+
+/// Solves a problem.
+pub fn solve(problem: &Problem, progress: &dyn Progress) -> Result<Solution, Obstacle> {
+    let (amount, search) = match &problem.amount {
+        AmountRequest::Given(amount) => (amount.clone(), None),
+        AmountRequest::Smallest { step } => {
+            let search = smallest(problem, step, progress)?;
+            (search.smallest.clone(), Some(search))
+        }
+    };
+    let operating = Operating::new(problem, amount);
+    let outcomes = operating.outcomes();
+    let region = match &problem.given_region {
+        Some(region) => region.within(outcomes.0, outcomes.1),
+        None => derive(&operating)?,
+    };
+    if region.is_empty() {
+        return Err(unreachable_level(&operating, progress));
+    }
+    let form = form_of(&region, outcomes);
+    let (size, within) = within_level(&operating, &region)?;
+    let mut requirements = Vec::with_capacity(problem.requirements.len());
+    for requirement in &problem.requirements {
+        let (infimum, met) = attained(&operating, &region, requirement)?;
+        requirements.push(RequirementOutcome {
+            attained: placed(&operating, infimum, &requirement.set),
+            met,
+        });
+    }
+    let power = power(&operating, &region, progress)?;
+    let mut solution = Solution {
+        outcomes,
+        form,
+        optimality: optimality(problem),
+        size_of_one_try: (problem.tries > 1).then(|| operating.single(&region, &size.at)),
+        size: placed(&operating, size, &problem.null),
+        within_level: within,
+        power,
+        requirements,
+        acceptance: acceptance(&operating, &region),
+        search,
+        double_entry: DoubleEntry::default(),
+        amount: operating.amount.clone(),
+        region,
+    };
+    solution.double_entry = DoubleEntry::of(&operating, &solution);
+    Ok(solution)
+}
+
+/// The extremum with its place in the declared parameter.
+fn placed(operating: &Operating<'_>, found: Extremum, declared: &LineSet) -> Placed {
+    let problem = operating.problem;
+    let at = problem
+        .observation
+        .preimage(&found.at, found.at_lower_end, declared);
+    Placed {
+        value: found.value,
+        attained: declared.contains(&at),
+        how: match found.how {
+            how if how.starts_with("total positivity") => {
+                format!("{how}; {}", problem.family.total_positivity())
+            }
+            how => how.to_owned(),
+        },
+        at,
+    }
+}
+
+fn power(
+    operating: &Operating<'_>,
+    region: &Region,
+    progress: &dyn Progress,
+) -> Result<Vec<PowerPoint>, Obstacle> {
+    let points = points(operating.problem);
+    let total = points.len() as u64;
+    let mut table = Vec::with_capacity(points.len());
+    for (done, at) in points.into_iter().enumerate() {
+        if !progress.step("points of the power function", done as u64, Some(total)) {
+            return Err(Obstacle::Stopped);
+        }
+        table.push(power_at(operating, region, at)?);
+    }
+    Ok(table)
+}
+
+fn power_at(operating: &Operating<'_>, region: &Region, at: Value) -> Result<PowerPoint, Obstacle> {
+    let problem = operating.problem;
+    let in_null = problem.null.contains(&at);
+    let (least, most) = problem.observation.images(&at);
+    let observed = if least == most {
+        least
+    } else {
+        let goal = if in_null {
+            Goal::Supremum
+        } else {
+            Goal::Infimum
+        };
+        extremum(operating, region, &LineSet::between(least, most), goal).at
+    };
+    Ok(PowerPoint {
+        in_null,
+        rejection: operating.rejection(region, &observed),
+        retention: operating.retention(region, &observed),
+        envelope: envelope(operating, &at)?,
+        at,
+    })
+}
+
+/// The points of the report: those of the plan that lie in the space, else a grid around all that matters.
+fn points(problem: &Problem) -> Vec<Value> {
+    let lattice = problem.family.lattice();
+    let closure = problem.space.closure();
+    if !problem.points.is_empty() {
+        return problem
+            .points
+            .iter()
+            .cloned()
+            .map(Value::Finite)
+            .filter(|at| closure.contains(at))
+            .filter(|at| lattice.as_ref().is_none_or(|l| l.index(at).is_some()))
+            .collect();
+    }
+    let mut ends: Vec<Exact> = Vec::new();
+    let mut add = |set: &LineSet| {
+        for piece in set.pieces() {
+            for end in [&piece.low().at, &piece.high().at] {
+                // The ends of the space itself are far from what matters.
+                if let Some(value) = end.finite()
+                    && problem.space.infimum() != Some(end)
+                    && problem.space.supremum() != Some(end)
+                {
+                    ends.push(value.clone());
+                }
+            }
+        }
+    };
+    add(&problem.null);
+    for requirement in &problem.requirements {
+        add(&requirement.set);
+    }
+    if ends.is_empty() {
+        ends.extend(problem.space.infimum().and_then(Value::finite).cloned());
+    }
+    ends.sort();
+    ends.dedup();
+    default_points(&problem.space, &ends, lattice.as_ref())
+}
+
+fn acceptance(operating: &Operating<'_>, region: &Region) -> Vec<(&'static str, f64)> {
+    let released_when_rejected = operating.problem.accept_when == AcceptWhen::NullRejected;
+    ACCEPTED
+        .iter()
+        .filter_map(|&(name, probability)| {
+            accepted_with(operating, region, released_when_rejected, probability)
+                .map(|at| (name, at))
+        })
+        .collect()
+}
+
+fn optimality(problem: &Problem) -> Optimality {
+    if problem.given_region.is_some() {
+        return Optimality {
+            claim: "none: the region is given by the plan and audited",
+            theorem: "none is needed: size and power are computed for the region as it stands"
+                .into(),
+            scope:
+                "the envelope beside each power shows what another test of this level could gain"
+                    .into(),
+        };
+    }
+    let family = problem.family.total_positivity();
+    match &problem.shape {
+        Shape::Below { .. } | Shape::Above { .. } => Optimality {
+            claim: "uniformly most powerful",
+            theorem: format!("Karlin–Rubin (1956): monotone likelihood ratio; {family}"),
+            scope: "among all tests of level equal to this test's size; at the full level another set can sometimes gain, and the envelope shows how much".into(),
+        },
+        Shape::Amid { .. } if problem.tails == Tails::Joint => Optimality {
+            claim: "maximal: no larger two-tailed region keeps the level",
+            theorem: format!("variation diminishing (Karlin 1968): the size over the null is at one of its ends; {family}"),
+            scope: "among two-tailed regions; of several maximal ones that whose tail sizes differ least".into(),
+        },
+        Shape::Amid { .. } => Optimality {
+            claim: "each tail is the largest of size at most half the level",
+            theorem: format!("each tail is uniformly most powerful on its side at its own size, Karlin–Rubin (1956); {family}"),
+            scope: "among pairs of one-sided tests at half the level each".into(),
+        },
+        Shape::Around { .. } => Optimality {
+            claim: "maximal: no larger inner range keeps the level",
+            theorem: format!("generalised Neyman–Pearson lemma and variation diminishing (Karlin 1968): best tests for equivalence reject on an inner range; {family}"),
+            scope: "among non-randomised inner ranges; of several maximal ones the one with the largest margin over the requirements".into(),
+        },
+        Shape::General => Optimality {
+            claim: "maximal: no outcome can be added without breaking the level",
+            theorem: "order of generalised likelihood ratios (Neyman and Pearson 1928), then exact improvement".into(),
+            scope: "no claim of best power is made; the envelope shows what any test could gain; the region is fixed by the program's version".into(),
+        },
+    }
+}
+
+/// What the level would need.
+fn unreachable_level(operating: &Operating<'_>, progress: &dyn Progress) -> Obstacle {
+    let (low, high) = operating.outcomes();
+    let problem = operating.problem;
+    let null = problem.observation.image(&problem.null);
+    let last = high.unwrap_or(low + 1_000).min(low + 5_000);
+    let smallest_size = match &problem.shape {
+        Shape::Below { .. } => low..=low,
+        Shape::Above { .. } => last..=last,
+        _ => low..=last,
+    }
+    .map(|count| {
+        let outcome = Region::between(count, count);
+        null.pieces()
+            .iter()
+            .flat_map(|piece| [&piece.low().at, &piece.high().at])
+            .map(|end| operating.rejection(&outcome, end).upper())
+            .fold(0.0, f64::max)
+    })
+    .fold(1.0, f64::min);
+    let mut anything = problem.clone();
+    anything.requirements.clear();
+    let needed = match &problem.amount {
+        AmountRequest::Given(_) if problem.given_region.is_none() => {
+            smallest(&anything, &Exact::one(), progress)
+                .ok()
+                .map(|search| search.smallest)
+        }
+        _ => None,
+    };
+    Obstacle::LevelUnreachable {
+        smallest: smallest_size,
+        needed,
+    }
+}

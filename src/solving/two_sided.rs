@@ -1,0 +1,480 @@
+//! Regions for nulls with two ends: two tails judged together, and inner ranges for equivalence.
+//!
+//! For totally positive families the probability of two tails is largest over an interval at one of its ends, and that of
+//! an inner range is largest outside an interval at one of the interval's ends, provided that it peaks inside (variation
+//! diminishing, Karlin 1968). So both searches judge a region at two points only.
+
+use std::cmp::Ordering;
+
+use crate::kernel::exact::Exact;
+use crate::kernel::exact_sum;
+use crate::kernel::region::Region;
+use crate::space::Value;
+
+use super::extremum::{Goal, extremum};
+use super::judgement::Level;
+use super::obstacle::Obstacle;
+use super::operating::{Operating, last_true};
+
+/// Most inner ranges compared before the search gives up.
+const MOST_CANDIDATES: u64 = 200_000;
+/// Doubles that differ by less than this part of them are compared exactly.
+const CLOSE: f64 = 1e-9;
+
+/// Two tails as positions: `lower` outcomes are rejected from below, and all from `upper` on.
+#[derive(Clone, Copy, Debug, PartialEq, Eq)]
+struct Tails {
+    /// How many outcomes the lower tail holds.
+    lower: u64,
+    /// First outcome of the upper tail; one beyond the last outcome for none.
+    upper: u64,
+}
+
+struct TwoTails<'a, 'b> {
+    operating: &'a Operating<'b>,
+    /// Null end where the lower tail is most probable.
+    low: &'a Value,
+    /// Null end where the upper tail is most probable.
+    high: &'a Value,
+    alpha: &'a Level,
+    first: u64,
+    beyond: u64,
+}
+
+/// Among the two-tailed regions of size at most α that no larger one contains: the one whose tail sizes, each at its own
+/// end of the null, differ least; then the smaller size; then the larger lower tail.
+pub fn joint_tails(
+    operating: &Operating<'_>,
+    low: &Value,
+    high: &Value,
+    alpha: &Level,
+) -> Result<Region, Obstacle> {
+    let (first, last) = operating.outcomes();
+    let search = TwoTails {
+        operating,
+        low,
+        high,
+        alpha,
+        first,
+        beyond: last.map_or(1 << 40, |last| last + 1),
+    };
+    let longest = operating
+        .largest_lower_tail(low, alpha)?
+        .map_or(0, |count| count + 1 - first);
+    // Along the maximal regions the lower tail grows and the upper shrinks, so their difference changes sign once.
+    let balanced = last_true(longest / 2, 0, longest, |lower| {
+        let tails = search.completed(lower)?;
+        Ok::<bool, Obstacle>(search.difference(tails) <= 0.0)
+    })?
+    .unwrap_or(0);
+    let here = search.completed(balanced)?;
+    let widest = search.longest_lower(here.upper, longest)?;
+    let mut candidates = vec![Tails {
+        lower: widest,
+        upper: here.upper,
+    }];
+    if widest == balanced && balanced < longest {
+        let next = search.completed(balanced + 1)?;
+        candidates.push(Tails {
+            lower: search.longest_lower(next.upper, longest)?,
+            upper: next.upper,
+        });
+    } else if widest > balanced {
+        // The region before: one less than the shortest lower tail that goes with this upper tail.
+        let shorter = last_true(balanced, 0, balanced, |lower| {
+            search
+                .completed(lower)
+                .map(|tails| tails.upper < here.upper)
+        })?;
+        if let Some(lower) = shorter {
+            candidates.push(search.completed(lower)?);
+        }
+    }
+    let best = candidates.into_iter().reduce(|best, other| {
+        if search.prefers(other, best) {
+            other
+        } else {
+            best
+        }
+    });
+    Ok(best.map_or_else(Region::empty, |tails| search.region(tails)))
+}
+
+impl TwoTails<'_, '_> {
+    fn lower(&self, tails: Tails) -> Region {
+        Region::at_most(
+            (self.first + tails.lower)
+                .checked_sub(1)
+                .filter(|_| tails.lower > 0),
+        )
+    }
+
+    fn upper(&self, tails: Tails) -> Region {
+        Region::at_least((tails.upper < self.beyond).then_some(tails.upper))
+    }
+
+    fn region(&self, tails: Tails) -> Region {
+        self.lower(tails).union(&self.upper(tails))
+    }
+
+    fn fits(&self, tails: Tails) -> Result<bool, Obstacle> {
+        let region = self.region(tails);
+        Ok(self.operating.is_at_most(&region, self.low, self.alpha)?
+            && self.operating.is_at_most(&region, self.high, self.alpha)?)
+    }
+
+    /// The lower tail with the largest upper tail that fits.
+    fn completed(&self, lower: u64) -> Result<Tails, Obstacle> {
+        let from = self.first + lower;
+        let start = self
+            .operating
+            .problem
+            .family
+            .expected_count(self.high, &self.operating.amount);
+        let start = if start.is_finite() {
+            start as u64
+        } else {
+            from
+        };
+        let too_large = last_true(start, from, self.beyond, |upper| {
+            self.fits(Tails { lower, upper }).map(|fits| !fits)
+        })?;
+        let upper = too_large.map_or(from, |upper| upper + 1).min(self.beyond);
+        Ok(Tails { lower, upper })
+    }
+
+    /// The largest lower tail that fits with an upper tail.
+    fn longest_lower(&self, upper: u64, longest: u64) -> Result<u64, Obstacle> {
+        let most = longest.min(upper - self.first);
+        Ok(last_true(most, 0, most, |lower| self.fits(Tails { lower, upper }))?.unwrap_or(0))
+    }
+
+    fn difference(&self, tails: Tails) -> f64 {
+        let lower = self.operating.single(&self.lower(tails), self.low).middle();
+        let upper = self
+            .operating
+            .single(&self.upper(tails), self.high)
+            .middle();
+        lower - upper
+    }
+
+    fn exact(&self, region: &Region, at: &Value) -> Option<Exact> {
+        exact_sum::probability(&self.operating.law(at), region)
+    }
+
+    fn exact_imbalance(&self, tails: Tails) -> Option<Exact> {
+        let difference = &self.exact(&self.lower(tails), self.low)?
+            - &self.exact(&self.upper(tails), self.high)?;
+        Some(if difference.is_negative() {
+            -&difference
+        } else {
+            difference
+        })
+    }
+
+    fn exact_size(&self, tails: Tails) -> Option<Exact> {
+        let region = self.region(tails);
+        Some(
+            self.exact(&region, self.low)?
+                .max(self.exact(&region, self.high)?),
+        )
+    }
+
+    fn size(&self, tails: Tails) -> f64 {
+        let region = self.region(tails);
+        let at = |end| self.operating.single(&region, end).middle();
+        at(self.low).max(at(self.high))
+    }
+
+    /// Whether the first is better than the second.
+    fn prefers(&self, one: Tails, other: Tails) -> bool {
+        let imbalance = order(
+            self.difference(one).abs(),
+            self.difference(other).abs(),
+            || {
+                Some(
+                    self.exact_imbalance(one)?
+                        .cmp(&self.exact_imbalance(other)?),
+                )
+            },
+        );
+        let size = || {
+            order(self.size(one), self.size(other), || {
+                Some(self.exact_size(one)?.cmp(&self.exact_size(other)?))
+            })
+        };
+        imbalance
+            .then_with(size)
+            .then(other.lower.cmp(&one.lower))
+            .is_lt()
+    }
+}
+
+/// Compares two figures, exactly where doubles are too close to tell.
+fn order(a: f64, b: f64, exactly: impl FnOnce() -> Option<Ordering>) -> Ordering {
+    if (a - b).abs() > CLOSE * a.max(b) {
+        a.total_cmp(&b)
+    } else {
+        exactly().unwrap_or(Ordering::Equal)
+    }
+}
+
+/// An inner range and how good it is.
+#[derive(Clone, Copy, Debug)]
+struct Inner {
+    from: u64,
+    to: u64,
+    /// Smallest (attained − required), or the power at the middle where nothing is required.
+    margin: f64,
+    /// Power in the middle of the alternative.
+    middle: f64,
+}
+
+struct InnerSearch<'a, 'b> {
+    operating: &'a Operating<'b>,
+    low: &'a Value,
+    high: &'a Value,
+    alpha: &'a Level,
+    middle: Value,
+    /// Ends of the requirements' sets as observed, and what is required there.
+    wanted: Vec<(Value, f64)>,
+    first: u64,
+    last: u64,
+}
+
+/// Among the inner ranges of size at most α that no larger one contains: the one with the greatest smallest
+/// (attained − required); then the greatest power in the middle of the alternative; then the smallest start.
+pub fn inner_region(
+    operating: &Operating<'_>,
+    low: &Value,
+    high: &Value,
+    alpha: &Level,
+) -> Result<Region, Obstacle> {
+    let problem = operating.problem;
+    let (first, last) = operating.outcomes();
+    let wanted = problem
+        .requirements
+        .iter()
+        .flat_map(|requirement| {
+            let at_least = requirement.at_least.to_f64();
+            let observed = problem.observation.image(&requirement.set);
+            observed
+                .pieces()
+                .iter()
+                .flat_map(|piece| [piece.low().at.clone(), piece.high().at.clone()])
+                .map(|at| (at, at_least))
+                .collect::<Vec<_>>()
+        })
+        .collect();
+    let search = InnerSearch {
+        operating,
+        low,
+        high,
+        alpha,
+        middle: middle_of_alternative(operating),
+        wanted,
+        first,
+        last: last.unwrap_or(1 << 40),
+    };
+    search.best()
+}
+
+/// The middle of the alternative, on a lattice rounded down, as observed.
+fn middle_of_alternative(operating: &Operating<'_>) -> Value {
+    let problem = operating.problem;
+    let ends = (
+        problem.alternative.infimum().and_then(Value::finite),
+        problem.alternative.supremum().and_then(Value::finite),
+    );
+    let (Some(low), Some(high)) = ends else {
+        return Value::Infinity;
+    };
+    let middle = low.midpoint(high);
+    let middle = match problem.family.lattice() {
+        None => Value::Finite(middle),
+        Some(lattice) => {
+            let steps = (&middle * &Exact::from(lattice.scale)).floor();
+            lattice.value(steps.to_u64().unwrap_or(0))
+        }
+    };
+    let (least, most) = problem.observation.images(&middle);
+    match (least.finite(), most.finite()) {
+        (Some(a), Some(b)) => Value::Finite(a.midpoint(b)),
+        _ => least,
+    }
+}
+
+impl InnerSearch<'_, '_> {
+    fn best(&self) -> Result<Region, Obstacle> {
+        let mut candidates = self.candidates()?;
+        // The best first; equal margins are told apart by the middle, then by the start.
+        candidates.sort_by(|a, b| {
+            near(b.margin, a.margin)
+                .then(near(b.middle, a.middle))
+                .then(a.from.cmp(&b.from))
+        });
+        for candidate in candidates {
+            if self.peaks_inside(&candidate)? {
+                return Ok(Region::between(candidate.from, candidate.to));
+            }
+        }
+        Ok(Region::empty())
+    }
+
+    /// Every maximal range that could be best: one start each, with the farthest end that fits.
+    fn candidates(&self) -> Result<Vec<Inner>, Obstacle> {
+        let centre = self
+            .operating
+            .problem
+            .family
+            .expected_count(&self.middle, &self.operating.amount);
+        let centre = if centre.is_finite() {
+            (centre as u64).clamp(self.first, self.last)
+        } else {
+            self.first
+        };
+        let Some(anchor) = self.around(centre)? else {
+            return self.smallest_ranges();
+        };
+        let floor = anchor.margin;
+        let earliest = self.earliest(centre, floor)?;
+        let mut found = Vec::new();
+        let mut from = earliest;
+        let mut previous_to = match from.checked_sub(1) {
+            Some(before) if before >= self.first => self.farthest(before, before)?,
+            _ => None,
+        };
+        let mut count = 0;
+        while from <= self.last && self.bound_from(from) >= floor - CLOSE {
+            count += 1;
+            if count > MOST_CANDIDATES {
+                return Err(Obstacle::NotProved {
+                    question: "which of very many inner ranges is best".to_owned(),
+                });
+            }
+            if let Some(to) = self.farthest(from, previous_to.unwrap_or(from).max(from))? {
+                if previous_to.is_none_or(|previous| to > previous) {
+                    found.push(self.rated(from, to));
+                }
+                previous_to = Some(to);
+            }
+            from += 1;
+        }
+        Ok(found)
+    }
+
+    /// Where nothing fits around the middle, single outcomes may still fit: they are all looked at.
+    fn smallest_ranges(&self) -> Result<Vec<Inner>, Obstacle> {
+        let mut found: Vec<Inner> = Vec::new();
+        let last = self.last.min(self.first + MOST_CANDIDATES);
+        for from in self.first..=last {
+            if self.bound_from(from) < -1.0 + CLOSE && from > self.first + 64 {
+                break;
+            }
+            if let Some(to) = self.farthest(from, from)?
+                && found.last().is_none_or(|previous| to > previous.to)
+            {
+                found.push(self.rated(from, to));
+            }
+        }
+        Ok(found)
+    }
+
+    /// A maximal range that holds the centre, if one fits.
+    fn around(&self, centre: u64) -> Result<Option<Inner>, Obstacle> {
+        let Some(to) = self.farthest(centre, centre)? else {
+            return Ok(None);
+        };
+        // Give up half of the way upwards, then take all that fits downwards.
+        let to = centre + (to - centre) / 2;
+        let shortest = last_true(0, 0, centre - self.first, |below| {
+            self.fits(centre - below, to)
+        })?
+        .unwrap_or(0);
+        let from = centre - shortest;
+        let to = self.farthest(from, to)?.unwrap_or(to);
+        Ok(Some(self.rated(from, to)))
+    }
+
+    /// The first start from which a range could reach the floor: its end must be far enough up.
+    fn earliest(&self, centre: u64, floor: f64) -> Result<u64, Obstacle> {
+        let hopeless = last_true(centre, self.first, centre, |from| {
+            Ok::<bool, Obstacle>(match self.farthest(from, from)? {
+                None => true,
+                Some(to) => self.bound_to(to) < floor - CLOSE,
+            })
+        })?;
+        Ok(hopeless.map_or(self.first, |from| (from + 1).min(centre)))
+    }
+
+    fn fits(&self, from: u64, to: u64) -> Result<bool, Obstacle> {
+        let region = Region::between(from, to);
+        Ok(self.operating.is_at_most(&region, self.low, self.alpha)?
+            && self.operating.is_at_most(&region, self.high, self.alpha)?)
+    }
+
+    /// The farthest end of a range that starts here and fits.
+    fn farthest(&self, from: u64, start: u64) -> Result<Option<u64>, Obstacle> {
+        last_true(start, from, self.last, |to| self.fits(from, to))
+    }
+
+    fn rated(&self, from: u64, to: u64) -> Inner {
+        let region = Region::between(from, to);
+        let power = |at: &Value| self.operating.rejection(&region, at).middle();
+        let middle = power(&self.middle);
+        let margin = self
+            .wanted
+            .iter()
+            .map(|(at, at_least)| power(at) - at_least)
+            .reduce(f64::min)
+            .unwrap_or(middle);
+        Inner {
+            from,
+            to,
+            margin,
+            middle,
+        }
+    }
+
+    /// No range that starts here has a larger margin.
+    fn bound_from(&self, from: u64) -> f64 {
+        self.bound(&Region::at_least(Some(from)))
+    }
+
+    /// No range that ends here has a larger margin.
+    fn bound_to(&self, to: u64) -> f64 {
+        self.bound(&Region::at_most(Some(to)))
+    }
+
+    fn bound(&self, region: &Region) -> f64 {
+        let power = |at: &Value| self.operating.rejection(region, at).upper();
+        self.wanted
+            .iter()
+            .map(|(at, at_least)| power(at) - at_least)
+            .reduce(f64::min)
+            .unwrap_or_else(|| power(&self.middle))
+    }
+
+    /// Whether the size over the whole null is at most α: at once where the probability in the middle exceeds that at
+    /// both ends, because it then peaks between them.
+    fn peaks_inside(&self, candidate: &Inner) -> Result<bool, Obstacle> {
+        let region = Region::between(candidate.from, candidate.to);
+        let at = |end: &Value| self.operating.rejection(&region, end).upper();
+        let middle = self.operating.rejection(&region, &self.middle).lower();
+        if middle >= at(self.low).max(at(self.high)) {
+            return Ok(true);
+        }
+        let problem = self.operating.problem;
+        let null = problem.observation.image(&problem.null);
+        let size = extremum(self.operating, &region, &null, Goal::Supremum);
+        Ok(size.value.upper() <= self.alpha.above())
+    }
+}
+
+fn near(a: f64, b: f64) -> Ordering {
+    if (a - b).abs() <= 1e-13 * a.abs().max(b.abs()) {
+        Ordering::Equal
+    } else {
+        a.total_cmp(&b)
+    }
+}
