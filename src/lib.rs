@@ -1,4 +1,7 @@
 //! **assize** compiles a declarative test plan into a sealed audit report.
+//!
+//! The whole journey of a plan is on this page: text → plan → problem → solution → record. Each step is a pure function;
+//! files, clocks and terminals live in [`command`].
 
 pub mod family;
 pub mod kernel;
@@ -7,3 +10,126 @@ pub mod problem;
 pub mod record;
 pub mod solving;
 pub mod space;
+
+use language::diagnostic::{Diagnostic, Span};
+use language::plan::Plan;
+use problem::{Problem, pose};
+use record::Record;
+use solving::{Obstacle, Solution, solve};
+
+pub use solving::{Progress, Silent};
+
+/// Everything one plan compiles to.
+#[derive(Clone, Debug)]
+pub struct Compilation {
+    /// The sealed record; absent exactly if some diagnostic is an error.
+    pub record: Option<Record>,
+    /// Errors and cautions, in the order of the text.
+    pub diagnostics: Vec<Diagnostic>,
+}
+
+/// A contradiction inside the program: nothing was filed, and the figures must not be used.
+#[derive(Clone, Debug, PartialEq, Eq)]
+pub struct InternalError(pub String);
+
+impl std::fmt::Display for InternalError {
+    fn fmt(&self, out: &mut std::fmt::Formatter<'_>) -> std::fmt::Result {
+        write!(out, "internal error: {}", self.0)
+    }
+}
+
+impl std::error::Error for InternalError {}
+
+/// Compiles the text of a plan. Bad plans give diagnostics; an error means that the program contradicts itself.
+pub fn compile(text: &str, progress: &dyn Progress) -> Result<Compilation, InternalError> {
+    let reading = language::read::read(text);
+    let mut diagnostics = reading.diagnostics;
+    let record = match reading.plan {
+        Some(plan) => record_of(&plan, &mut diagnostics, progress)?,
+        None => None,
+    };
+    diagnostics.sort_by_key(|found| found.span);
+    Ok(Compilation {
+        record,
+        diagnostics,
+    })
+}
+
+/// All findings about a plan, those that need solving included.
+pub fn check(text: &str, progress: &dyn Progress) -> Result<Vec<Diagnostic>, InternalError> {
+    compile(text, progress).map(|compilation| compilation.diagnostics)
+}
+
+fn record_of(
+    plan: &Plan,
+    diagnostics: &mut Vec<Diagnostic>,
+    progress: &dyn Progress,
+) -> Result<Option<Record>, InternalError> {
+    let problem = match pose(plan) {
+        Ok(problem) => problem,
+        Err(found) => {
+            diagnostics.extend(found);
+            return Ok(None);
+        }
+    };
+    let solution = match solve(&problem, progress) {
+        Ok(solution) => solution,
+        Err(obstacle) => {
+            diagnostics.push(in_words(&obstacle, &problem));
+            return Ok(None);
+        }
+    };
+    if let Some(disagreement) = &solution.double_entry.disagreement {
+        return Err(InternalError(format!(
+            "two computations of a probability disagree: {disagreement}"
+        )));
+    }
+    Ok(Some(filed(plan, &problem, &solution)))
+}
+
+fn filed(plan: &Plan, problem: &Problem, solution: &Solution) -> Record {
+    record::build(plan, problem, solution)
+}
+
+/// What stands in the way, as a diagnostic.
+fn in_words(obstacle: &Obstacle, problem: &Problem) -> Diagnostic {
+    let at =
+        |code: &'static str, span: Span, message: String| Diagnostic::error(code, span, message);
+    match obstacle {
+        Obstacle::LevelUnreachable { smallest, needed } => at(
+            "level-unreachable",
+            problem.amount_span,
+            format!(
+                "no region that rejects anything has a size of at most {}: the smallest is {smallest:.6} here",
+                problem.alpha
+            ),
+        )
+        .with_help(match needed {
+            Some(needed) => format!("the level can be reached from {needed} on"),
+            None => "raise alpha, enlarge the sample, or shrink the null subset".to_owned(),
+        }),
+        Obstacle::SearchExhausted { limit, failing } => at(
+            "no-sample-size",
+            problem.amount_span,
+            format!("no amount up to {limit} will do; {failing}"),
+        )
+        .with_help("widen the gap between the null subset and the requirements, or ask for less power"),
+        Obstacle::NotProved { question } => at(
+            "not-proved",
+            problem.region_span,
+            format!("a question is left open: {question}"),
+        )
+        .with_help("change the level or the requirement in its last digit, or use a smaller sample"),
+        Obstacle::NoLargestRegion => at(
+            "no-largest-region",
+            problem.region_span,
+            "every bounded region fits this null, and none is largest".to_owned(),
+        )
+        .with_help("state the region with `critical_region`"),
+        Obstacle::Stopped => at(
+            "stopped",
+            problem.amount_span,
+            "solving was stopped before it was done".to_owned(),
+        ),
+    }
+}

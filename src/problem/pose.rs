@@ -111,7 +111,7 @@ fn family(
         (Some(size), false) => {
             problems.push(
                 Diagnostic::error(
-                    "key-of-another-family",
+                    "key-not-for-family",
                     size.span,
                     format!("`lot_size` does not belong to a `{}` plan", registration.name),
                 )
@@ -185,7 +185,7 @@ fn amount(
     if let Some(unwanted) = unwanted {
         problems.push(
             Diagnostic::error(
-                "key-of-another-family",
+                "key-not-for-family",
                 unwanted.span,
                 format!(
                     "`{other}` does not belong to a `{}` plan",
@@ -260,7 +260,7 @@ fn step(test: &Test, kind: AmountKind, problems: &mut Vec<Diagnostic>) -> Option
     if kind != AmountKind::Opportunity {
         problems.push(
             Diagnostic::error(
-                "key-of-another-family",
+                "key-not-for-family",
                 step.span,
                 format!("`step` does not belong to a `{}` plan", test.family.value),
             )

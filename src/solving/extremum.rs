@@ -37,6 +37,8 @@ pub struct Extremum {
 const BY_MONOTONICITY: &str = "monotone likelihood ratio: the probability of a tail is monotone in the parameter (Lehmann 1955), so the extremum is at an end of the set";
 /// The argument for two tails and inner ranges.
 const BY_VARIATION: &str = "total positivity: the probability of two tails first falls and then rises along the parameter, that of an inner range first rises and then falls (variation diminishing, Karlin 1968), so the extremum is at an end of the set";
+/// The argument where an inner range's probability, or that of its complement, is monotone over a piece of the set.
+const BY_PEAK_OUTSIDE: &str = "total positivity: the probability of an inner range first rises and then falls along the parameter, that of two tails first falls and then rises (variation diminishing, Karlin 1968); the turn lies outside the set, as a point beyond its end shows, so the extremum is at that end";
 /// The argument for everything else.
 const BY_BRANCH_AND_BOUND: &str =
     "branch and bound with enclosures of the probability and of its slope over the whole set";
@@ -127,9 +129,48 @@ fn over_piece(
             at_end(rises != (goal == Goal::Supremum), BY_MONOTONICITY)
         }
         (Form::TwoTails, Goal::Supremum) | (Form::Inner, Goal::Infimum) => better_end(BY_VARIATION),
-        _ if piece.is_point() => at_end(true, BY_BRANCH_AND_BOUND),
-        _ => branch_and_bound(operating, region, piece, goal),
+        _ if piece.is_point() => at_end(true, BY_VARIATION),
+        (Form::Inner, _) | (Form::TwoTails, _) => {
+            match end_towards_peak(operating, region, form, piece) {
+                Some(lower) => at_end(lower, BY_PEAK_OUTSIDE),
+                None => branch_and_bound(operating, region, piece, goal),
+            }
+        }
+        (Form::Scattered, _) => branch_and_bound(operating, region, piece, goal),
     }
+}
+
+/// The end of the piece (lower or not) that is nearest to the peak of an inner range's probability, if a point beyond it
+/// shows that the peak lies outside: the probability is then monotone on the piece. Two tails are the complement.
+fn end_towards_peak(
+    operating: &Operating<'_>,
+    region: &Region,
+    form: Form,
+    piece: &Interval,
+) -> Option<bool> {
+    let (low, high) = operating.outcomes();
+    let inner = if form == Form::Inner {
+        region.within(low, high)
+    } else {
+        region.complement().within(low, high)
+    };
+    let range = inner.ranges().first()?;
+    let middle = range.from + (range.to? - range.from) / 2;
+    let witness = operating
+        .problem
+        .family
+        .most_likely(middle, &operating.amount);
+    let lower = if witness < piece.low().at {
+        true
+    } else if witness > piece.high().at {
+        false
+    } else {
+        return None;
+    };
+    let end = if lower { piece.low() } else { piece.high() };
+    let there = operating.single(&inner, &witness).lower();
+    let here = operating.single(&inner, &end.at).upper();
+    (there > here).then_some(lower)
 }
 
 /// A stretch of the parameter with an upper bound on the probability over it.

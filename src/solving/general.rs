@@ -68,11 +68,8 @@ fn within(
         return Ok(true);
     }
     let size = extremum(operating, region, null, Goal::Supremum);
-    if size.value.upper() < alpha.above().next_down() {
-        return Ok(true);
-    }
-    if size.value.lower() > alpha.above() {
-        return Ok(false);
+    if let Some(order) = alpha.against(size.value) {
+        return Ok(order != std::cmp::Ordering::Greater);
     }
     let at_an_end = null
         .pieces()

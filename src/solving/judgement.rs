@@ -13,7 +13,7 @@ use crate::kernel::region::Region;
 
 use super::obstacle::Obstacle;
 
-/// A level as an exact number with the doubles on both sides of it.
+/// A level as an exact number with the nearest doubles on both sides of it, itself where it is a double.
 #[derive(Clone, Debug)]
 pub struct Level {
     exact: Exact,
@@ -25,10 +25,16 @@ impl Level {
     /// The level of an exact number.
     pub fn new(exact: Exact) -> Self {
         let nearest = exact.to_f64();
+        let side = Exact::from_f64(nearest).map_or(Ordering::Equal, |double| double.cmp(&exact));
+        let (below, above) = match side {
+            Ordering::Less => (nearest, nearest.next_up()),
+            Ordering::Equal => (nearest, nearest),
+            Ordering::Greater => (nearest.next_down(), nearest),
+        };
         Self {
-            below: nearest.next_down(),
-            above: nearest.next_up(),
             exact,
+            below,
+            above,
         }
     }
 
@@ -37,18 +43,23 @@ impl Level {
         &self.exact
     }
 
-    /// A double above it.
+    /// The smallest double that is not below it.
     pub fn above(&self) -> f64 {
         self.above
     }
 
-    fn against(&self, value: Enclosure) -> Option<Ordering> {
-        if value.upper() <= self.below {
-            Some(Ordering::Less)
-        } else if value.lower() >= self.above {
-            Some(Ordering::Greater)
-        } else {
-            None
+    /// How an enclosed value compares with it, where the enclosure tells.
+    pub fn against(&self, value: Enclosure) -> Option<Ordering> {
+        let is_double = self.below == self.above;
+        let less = value.upper() < self.below || (!is_double && value.upper() <= self.below);
+        let greater = value.lower() > self.above || (!is_double && value.lower() >= self.above);
+        match (less, greater) {
+            (true, _) => Some(Ordering::Less),
+            (_, true) => Some(Ordering::Greater),
+            _ if is_double && value.lower() == value.upper() => {
+                value.lower().partial_cmp(&self.below)
+            }
+            _ => None,
         }
     }
 }

@@ -1,6 +1,8 @@
 //! The smallest amount of inspection that meets the level and every requirement, the amount from which on every larger
 //! one does too, and why one less fails.
 
+use std::cmp::Ordering;
+
 use crate::family::AmountKind;
 use crate::kernel::exact::Exact;
 use crate::kernel::region::Region;
@@ -77,12 +79,9 @@ pub fn attained(
     let observed = operating.problem.observation.image(&requirement.set);
     let infimum = extremum(operating, region, &observed, Goal::Infimum);
     let level = Level::new(requirement.at_least.clone());
-    let met = if infimum.value.lower() > level.above() {
-        true
-    } else if infimum.value.upper() < level.above().next_down().next_down() {
-        false
-    } else {
-        operating.is_at_least(region, &infimum.at, &level)?
+    let met = match level.against(infimum.value) {
+        Some(order) => order != Ordering::Less,
+        None => operating.is_at_least(region, &infimum.at, &level)?,
     };
     Ok((infimum, met))
 }
@@ -96,12 +95,9 @@ pub fn within_level(
     let null = problem.observation.image(&problem.null);
     let size = extremum(operating, region, &null, Goal::Supremum);
     let alpha = operating.alpha();
-    let within = if size.value.upper() < alpha.above().next_down().next_down() {
-        true
-    } else if size.value.lower() > alpha.above() {
-        false
-    } else {
-        operating.is_at_most(region, &size.at, &alpha)?
+    let within = match alpha.against(size.value) {
+        Some(order) => order != Ordering::Greater,
+        None => operating.is_at_most(region, &size.at, &alpha)?,
     };
     Ok((size, within))
 }
@@ -271,7 +267,7 @@ impl<'a> Amounts<'a> {
                         every_from = from;
                     }
                     if to < segment.to {
-                        every_from = to + 1;
+                        every_from = segment.to + 1;
                     }
                 }
                 None if segment.from <= segment.to => every_from = segment.to + 1,
