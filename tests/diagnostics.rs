@@ -8,7 +8,7 @@ use std::fs;
 use std::path::Path;
 
 use assize::language::codes::CODES;
-use assize::language::read::read;
+use assize::{Silent, check};
 
 const PAGE: &str = include_str!("../docs/diagnostics.md");
 
@@ -36,9 +36,10 @@ decision:
 
 /// The codes that reading a text reports.
 fn findings(text: &str) -> Vec<&'static str> {
-    read(text)
-        .diagnostics
+    check(text, &Silent)
+        .unwrap()
         .iter()
+        .filter(|found| found.rule.is_none())
         .map(|found| found.code)
         .collect()
 }

@@ -1,5 +1,7 @@
 //! The problem a plan poses: exact sets, level and requirements, free of the plan's wording.
 
+mod critical_region;
+mod declared;
 mod grid;
 mod observation;
 mod pose;
