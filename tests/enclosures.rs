@@ -2,6 +2,8 @@
 //! rational numbers without any rounding (num-rational). Source of the formulae: Johnson, Kemp and Kotz, "Univariate
 //! Discrete Distributions" (from memory).
 
+#![allow(clippy::unwrap_used)] // a failed unwrap fails the test
+
 use assize::kernel::enclosure::Enclosure;
 use assize::kernel::exact::Exact;
 use assize::kernel::law::{self, Law};
