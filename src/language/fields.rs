@@ -4,11 +4,10 @@
 use crate::kernel::exact::{Exact, NotANumber};
 use crate::language::diagnostic::{Diagnostic, Located, Span};
 use crate::language::expression;
-use crate::language::locate::shown;
 use crate::language::plan::SampleSize;
 use crate::language::set::SetExpression;
 use crate::language::source::Source;
-use crate::language::suggestion::nearest;
+use crate::language::suggestion::{nearest, shown};
 use crate::language::tree::Node;
 
 /// The most units, lot sizes and amounts: far beyond any inspection, and small enough to compute with.

@@ -3,10 +3,13 @@
 
 use std::collections::BTreeMap;
 
-use saphyr_parser::{Event, Parser, ScalarStyle, ScanError, Span as ParserSpan};
+use saphyr_parser::{Event, Parser, ScalarStyle, Span as ParserSpan};
 
-use crate::language::diagnostic::{CautionGrade, Diagnostic, Located, Span};
+use crate::language::characters::{directive, forbidden_characters};
+use crate::language::diagnostic::{Diagnostic, Located, Span};
 use crate::language::source::Source;
+use crate::language::suggestion::shown;
+use crate::language::syntax;
 use crate::language::tree::{Entry, Kind, Node, Style};
 
 /// The longest plan text, in bytes.
@@ -44,83 +47,6 @@ const FIRST: Span = Span {
     column: 1,
     width: 1,
 };
-
-/// Control characters and the line breaks on which YAML 1.1 and 1.2 readers differ. Characters that reorder the text on
-/// paper draw a caution: what is approved must be what is read.
-fn forbidden_characters(source: &Source) -> Vec<Diagnostic> {
-    let mut found = Vec::new();
-    for line in 1..=source.line_count() {
-        for (at, character) in source.line(line).iter().enumerate() {
-            let span = Span {
-                line,
-                column: at + 1,
-                width: 1,
-            };
-            let code_point = format!("U+{:04X}", u32::from(*character));
-            match character {
-                '\t' => {}
-                '\u{202A}'..='\u{202E}' | '\u{2066}'..='\u{2069}' => found.push(
-                    Diagnostic::caution(
-                        CautionGrade::Warning,
-                        "reordering-character",
-                        span,
-                        format!("{code_point} reorders the text around it when shown"),
-                    )
-                    .with_help("leave it out, so that everyone reads the same text"),
-                ),
-                '\u{FEFF}' => found.push(
-                    Diagnostic::error(
-                        "forbidden-character",
-                        span,
-                        format!("a byte order mark ({code_point}) is not allowed"),
-                    )
-                    .with_help("save the file as UTF-8 without a byte order mark"),
-                ),
-                c if c.is_control() || matches!(c, '\u{2028}' | '\u{2029}') => found.push(
-                    Diagnostic::error(
-                        "forbidden-character",
-                        span,
-                        format!("the character {code_point} is not allowed in a plan"),
-                    )
-                    .with_help("remove it; it may have come with pasted text"),
-                ),
-                _ => {}
-            }
-            if found.len() >= MOST_FINDINGS {
-                return found;
-            }
-        }
-    }
-    found
-}
-
-/// A `%` directive can only stand before the document's first line of content.
-fn directive(source: &Source) -> Option<Diagnostic> {
-    for line in 1..=source.line_count() {
-        let content = source.line(line);
-        let first = content.iter().find(|c| !c.is_whitespace());
-        match first {
-            None | Some('#') => {}
-            Some('%') if content.first() == Some(&'%') => {
-                let span = Span {
-                    line,
-                    column: 1,
-                    width: content.len(),
-                };
-                return Some(
-                    Diagnostic::error(
-                        "directive",
-                        span,
-                        "YAML directives are not part of the plan language",
-                    )
-                    .with_help("remove this line; a plan is always YAML 1.2"),
-                );
-            }
-            Some(_) => return None,
-        }
-    }
-    None
-}
 
 /// A collection that is being built.
 struct Open {
@@ -170,7 +96,7 @@ impl<'a> Builder<'a> {
             let (event, place) = match next {
                 Ok(found) => found,
                 Err(error) => {
-                    self.syntax(&error);
+                    self.report(syntax::explain(&error, self.source));
                     return None;
                 }
             };
@@ -246,7 +172,7 @@ impl<'a> Builder<'a> {
     fn begin(&mut self, place: ParserSpan, bracket: char, content: Content) -> bool {
         let span = self.span(place);
         if self.open.len() >= MOST_LEVELS {
-            self.too_deep(span);
+            self.report(syntax::too_deep(span));
             return false;
         }
         self.open.push(Open {
@@ -257,17 +183,6 @@ impl<'a> Builder<'a> {
             content,
         });
         true
-    }
-
-    fn too_deep(&mut self, span: Span) {
-        self.report(
-            Diagnostic::error(
-                "too-deep",
-                span,
-                format!("the plan is nested more than {MOST_LEVELS} levels deep"),
-            )
-            .with_help("no plan needs this; look for brackets that are not closed"),
-        );
     }
 
     /// Whether the next node stands where a mapping's key should.
@@ -435,58 +350,6 @@ impl<'a> Builder<'a> {
         anchor != 0 || tagged
     }
 
-    fn syntax(&mut self, error: &ScanError) {
-        let marker = error.marker();
-        let span = self.source.clip(Span {
-            line: marker.line().max(1),
-            column: marker.col() + 1,
-            width: 1,
-        });
-        let info = error.info();
-        if info.contains("recursion limit") {
-            self.too_deep(span);
-            return;
-        }
-        if info.contains("unknown anchor") {
-            self.report(
-                Diagnostic::error(
-                    "alias",
-                    span,
-                    "aliases (`*name`) are not part of the plan language",
-                )
-                .with_help("quote the text if `*` belongs to it"),
-            );
-            return;
-        }
-        let tab = self
-            .source
-            .line(span.line)
-            .iter()
-            .take_while(|c| c.is_whitespace())
-            .any(|c| *c == '\t');
-        let code = if tab { "tab-indent" } else { "yaml-syntax" };
-        let help = if tab {
-            "indent with spaces: YAML does not allow tabs there".to_owned()
-        } else {
-            self.syntax_help(span)
-        };
-        self.report(
-            Diagnostic::error(code, span, format!("this is not YAML: {info}")).with_help(help),
-        );
-    }
-
-    /// What most likely went wrong where the parser stumbled.
-    fn syntax_help(&self, span: Span) -> String {
-        match self.source.at(span.line, span.column) {
-            Some(sign @ ('>' | '|' | '@' | '`' | '%' | '&' | '*' | '!')) => {
-                format!("unquoted text cannot begin with `{sign}`: put it in double quotes")
-            }
-            Some(':') => "put text that holds a colon in double quotes".to_owned(),
-            Some(quote @ ('"' | '\'')) => format!("look for a `{quote}` that is not closed"),
-            _ => "look for a missing quote, colon or bracket here or on the line above".to_owned(),
-        }
-    }
-
     fn report(&mut self, diagnostic: Diagnostic) {
         self.errors += 1;
         self.diagnostics.push(diagnostic);
@@ -518,16 +381,5 @@ fn node(place: ParserSpan, span: Span, flow: bool, kind: Kind) -> Node {
         end_column: place.end.col() + 1,
         flow,
         kind,
-    }
-}
-
-/// A piece of the plan quoted in a message, cut to a length a terminal can bear.
-pub fn shown(text: &str) -> String {
-    const MOST: usize = 60;
-    if text.chars().count() <= MOST {
-        text.to_owned()
-    } else {
-        let head: String = text.chars().take(MOST).collect();
-        format!("{head}…")
     }
 }

@@ -1,5 +1,6 @@
 //! The plan language: from text to a typed plan with a place for every value. Knows no mathematics.
 
+mod characters;
 pub mod codes;
 pub mod description;
 pub mod diagnostic;
@@ -18,6 +19,7 @@ pub mod set;
 pub mod shape;
 pub mod source;
 pub mod suggestion;
+mod syntax;
 pub mod test_block;
 pub mod tree;
 pub mod yaml;

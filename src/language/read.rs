@@ -7,12 +7,13 @@ use crate::language::diagnostic::{CautionGrade, Diagnostic, Located, Span};
 use crate::language::families;
 use crate::language::fields::Fields;
 use crate::language::grid;
-use crate::language::locate::{MOST_FINDINGS, locate, shown};
+use crate::language::locate::{MOST_FINDINGS, locate};
 use crate::language::plan::{
     AcceptWhen, Characteristic, Decision, Plan, Requirement, Test, WaivedRule,
 };
 use crate::language::shape;
 use crate::language::source::Source;
+use crate::language::suggestion::shown;
 use crate::language::test_block;
 use crate::language::tree::Node;
 use crate::language::yaml;

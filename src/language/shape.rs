@@ -4,10 +4,9 @@
 use serde_json::{Map, Value};
 
 use crate::language::diagnostic::{CautionGrade, Diagnostic, Span};
-use crate::language::locate::shown;
 use crate::language::schema;
 use crate::language::source::Source;
-use crate::language::suggestion::{nearest, one_of};
+use crate::language::suggestion::{nearest, one_of, shown};
 use crate::language::tree::{Kind, Node, Style};
 
 /// Checks a tree against the plan language. A block named in `skip` is left alone.
@@ -174,7 +173,7 @@ impl<'a> Walk<'a> {
         }
         let Kind::Scalar { text, style } = &node.kind else {
             let due = if kind == "Number" { "a number" } else { "text" };
-            if node.flow && self.source.at(node.span.line, node.span.column) == Some('{') {
+            if looks_like_text(node) {
                 self.found.push(
                     Diagnostic::error(
                         "wrong-kind",
@@ -283,6 +282,14 @@ impl<'a> Walk<'a> {
             .with_help("put the text in double quotes if this belongs to it, or move the comment to a line of its own"),
         );
     }
+}
+
+/// `{good, fair}`: keys without values in braces are text that was not quoted.
+fn looks_like_text(node: &Node) -> bool {
+    let empty = |node: &Node| node.text().is_some_and(str::is_empty);
+    node.flow
+        && !node.entries().is_empty()
+        && node.entries().iter().all(|entry| empty(&entry.value))
 }
 
 fn fits(node: &Node, definition: &Value) -> bool {

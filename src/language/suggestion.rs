@@ -1,4 +1,4 @@
-//! The word that was probably meant.
+//! The word that was probably meant, and words quoted in messages.
 
 /// The candidate nearest to a word, if it is near enough to be a slip of the pen.
 pub fn nearest<'a>(word: &str, candidates: impl IntoIterator<Item = &'a str>) -> Option<&'a str> {
@@ -39,6 +39,17 @@ pub fn one_of(words: &[&str]) -> String {
             let before: Vec<String> = before.iter().map(|word| format!("`{word}`")).collect();
             format!("{} or `{last}`", before.join(", "))
         }
+    }
+}
+
+/// A piece of the plan quoted in a message, cut to a length a terminal can bear.
+pub fn shown(text: &str) -> String {
+    const MOST: usize = 60;
+    if text.chars().count() <= MOST {
+        text.to_owned()
+    } else {
+        let head: String = text.chars().take(MOST).collect();
+        format!("{head}…")
     }
 }
 

@@ -4,9 +4,8 @@ use crate::kernel::exact::Exact;
 use crate::language::diagnostic::{Located, Span};
 use crate::language::families::{DERIVED, not_yet};
 use crate::language::fields::{Fields, MOST_UNITS};
-use crate::language::locate::shown;
 use crate::language::plan::{Inspection, SequentialRequest, StageRequest, Tails, Test};
-use crate::language::suggestion::{nearest, one_of};
+use crate::language::suggestion::{nearest, one_of, shown};
 use crate::language::tree::Node;
 
 /// More stages than any inspection has.

@@ -2,8 +2,8 @@
 
 use crate::kernel::exact::{Exact, NotANumber};
 use crate::language::expression::{Fault, fault};
-use crate::language::locate::shown;
 use crate::language::set::Relation;
+use crate::language::suggestion::shown;
 
 /// A word, number or sign.
 #[derive(Clone, Debug, PartialEq, Eq)]

@@ -11,6 +11,7 @@
 
 mod lexer;
 mod parser;
+mod side;
 
 use crate::language::diagnostic::Span;
 use crate::language::set::SetExpression;
