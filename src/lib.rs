@@ -8,6 +8,7 @@ pub mod kernel;
 pub mod language;
 pub mod problem;
 pub mod record;
+pub mod report;
 pub mod solving;
 pub mod space;
 

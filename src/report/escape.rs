@@ -1,0 +1,212 @@
+//! User text is shown as text. Inline text is escaped for Markdown; CommonMark of the author keeps its form but loses
+//! raw HTML, pictures and links that could act; a whole file goes into a fence that it cannot close.
+
+use std::fmt::Write;
+use std::ops::Range;
+
+use pulldown_cmark::{Event, LinkType, Parser, Tag};
+
+/// Text of one line, with every character that Markdown or HTML could read as markup escaped.
+pub fn inline(text: &str) -> String {
+    let mut out = String::with_capacity(text.len());
+    for (at, word) in text.split_whitespace().enumerate() {
+        if at > 0 {
+            out.push(' ');
+        }
+        for character in word.chars() {
+            push_escaped(&mut out, character);
+        }
+    }
+    out
+}
+
+fn push_escaped(out: &mut String, character: char) {
+    if is_hidden(character) {
+        // A character that reverses or hides its neighbours would make the paper say something else than the file.
+        let _ = write!(out, "(U+{:04X})", u32::from(character));
+        return;
+    }
+    if matches!(
+        character,
+        '\\' | '`' | '*' | '_' | '[' | ']' | '<' | '>' | '&' | '|' | '~' | '#' | '$' | '^'
+    ) {
+        out.push('\\');
+    }
+    out.push(character);
+}
+
+/// Control characters, direction overrides and isolates, and characters without width.
+fn is_hidden(character: char) -> bool {
+    character.is_control()
+        || matches!(character,
+            '\u{200B}' | '\u{200E}' | '\u{200F}' | '\u{202A}'..='\u{202E}' | '\u{2060}'..='\u{2069}' | '\u{FEFF}')
+}
+
+/// CommonMark of the author as a block quotation: nothing in it can end the quotation or reach beyond it.
+pub fn quotation(text: &str) -> String {
+    let safe = without_active_parts(text);
+    let mut out = String::with_capacity(safe.len() + 64);
+    for line in safe.trim_end().lines() {
+        let line = line.trim_end();
+        out.push('>');
+        if !line.is_empty() {
+            out.push(' ');
+            out.extend(line.chars().map(|c| {
+                if is_hidden(c) && c != '\t' {
+                    '\u{FFFD}'
+                } else {
+                    c
+                }
+            }));
+        }
+        out.push('\n');
+    }
+    out
+}
+
+/// Raw HTML becomes text, pictures and acting links become their source text.
+fn without_active_parts(text: &str) -> String {
+    let once = disarm(text, &active_ranges(text));
+    // What was markup may now be read in another way; if anything still acts, no markup of the text is kept.
+    if active_ranges(&once).is_empty() {
+        once
+    } else {
+        text.lines().map(inline).collect::<Vec<_>>().join("\n")
+    }
+}
+
+fn active_ranges(text: &str) -> Vec<Range<usize>> {
+    Parser::new(text)
+        .into_offset_iter()
+        .filter(|(event, _)| is_active(event))
+        .map(|(_, range)| range)
+        .collect()
+}
+
+fn is_active(event: &Event<'_>) -> bool {
+    match event {
+        Event::Html(_) | Event::InlineHtml(_) | Event::Start(Tag::Image { .. }) => true,
+        Event::Start(Tag::Link {
+            link_type,
+            dest_url,
+            ..
+        }) => !(is_harmless(dest_url) || *link_type == LinkType::Email),
+        _ => false,
+    }
+}
+
+/// Whether a link leads to a page or a letter, and not to a script or a file.
+pub fn is_harmless(destination: &str) -> bool {
+    let lower = destination.to_ascii_lowercase();
+    ["https://", "http://", "mailto:"]
+        .iter()
+        .any(|scheme| lower.starts_with(scheme))
+}
+
+/// Within the ranges, `<` becomes its entity and brackets are escaped.
+fn disarm(text: &str, ranges: &[Range<usize>]) -> String {
+    let mut out = String::with_capacity(text.len() + 16);
+    let mut inside_until = 0;
+    let mut ranges = ranges.iter().peekable();
+    let mut escaped = false;
+    for (at, character) in text.char_indices() {
+        while let Some(range) = ranges.next_if(|range| range.start <= at) {
+            inside_until = inside_until.max(range.end);
+        }
+        if at < inside_until && !escaped {
+            match character {
+                '<' => {
+                    out.push_str("&lt;");
+                    continue;
+                }
+                '[' | ']' | '!' => out.push('\\'),
+                _ => {}
+            }
+        }
+        escaped = character == '\\' && !escaped;
+        out.push(character);
+    }
+    out
+}
+
+/// A file as a fenced block whose fence is longer than any run of backticks in it.
+pub fn fenced(text: &str, language: &str) -> String {
+    let fence = "`".repeat(longest_run(text, '`').max(2) + 1);
+    let end = if text.ends_with('\n') { "" } else { "\n" };
+    format!("{fence}{language}\n{text}{end}{fence}\n")
+}
+
+fn longest_run(text: &str, wanted: char) -> usize {
+    let mut longest = 0;
+    let mut run = 0;
+    for character in text.chars() {
+        run = if character == wanted { run + 1 } else { 0 };
+        longest = longest.max(run);
+    }
+    longest
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+    use proptest::prelude::*;
+    use pulldown_cmark::TagEnd;
+
+    fn text_of(markdown: &str) -> String {
+        Parser::new(markdown)
+            .filter_map(|event| match event {
+                Event::Text(text) => Some(text.to_string()),
+                Event::End(TagEnd::Paragraph) => Some("\n".to_owned()),
+                _ => None,
+            })
+            .collect()
+    }
+
+    proptest! {
+        /// Whatever is typed is read back as the same words, and as nothing but words.
+        #[test]
+        fn inline_text_survives(text in "[ -~]{0,40}") {
+            let escaped = format!("**Name:** {}", inline(&text));
+            let words = text.split_whitespace().collect::<Vec<_>>().join(" ");
+            let shown = text_of(&escaped);
+            let expected = format!("Name: {words}");
+            prop_assert_eq!(shown.trim_end(), expected.trim_end());
+        }
+
+        #[test]
+        fn nothing_acts_in_a_quotation(text in "[\\[\\]()<>!`*_a-c:/\\\\ \n>-]{0,60}") {
+            prop_assert!(active_ranges(&quotation(&text)).is_empty());
+            prop_assert!(quotation(&text).lines().all(|line| line.starts_with('>')));
+        }
+
+        #[test]
+        fn fences_hold(text in "[`~a\n ]{0,60}") {
+            let fenced = fenced(&text, "yaml");
+            let ends = Parser::new(&format!("{fenced}\nafter\n"))
+                .filter(|event| matches!(event, Event::Start(Tag::Paragraph)))
+                .count();
+            prop_assert_eq!(ends, 1);
+        }
+    }
+
+    #[test]
+    fn scripts_and_pictures_become_text() {
+        for text in [
+            "<script>alert(1)</script>",
+            "a <b onclick=x>b</b>",
+            "[go](javascript:alert(1))",
+            "![pixel](https://example.org/p.png)",
+            "[go][x]\n\n[x]: javascript:alert(1)",
+            "<javascript:alert(1)>",
+            "<!-- hidden",
+        ] {
+            assert!(active_ranges(&quotation(text)).is_empty(), "{text}");
+        }
+        assert!(quotation("[page](https://example.org)").contains("[page](https://example.org)"));
+    }
+
+    #[test]
+    fn hidden_characters_are_named() {
+        assert_eq!(inline("a\u{202E}b"), "a(U+202E)b");
+    }
+}

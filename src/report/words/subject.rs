@@ -1,0 +1,357 @@
+//! What the sentences are about: the counted units, the parameter, and how its values are said.
+
+use crate::kernel::exact::Exact;
+use crate::record::{Amount, Record};
+use crate::report::escape::inline;
+use crate::report::round::{Toward, as_written, significant};
+
+use super::sets::{End, Piece, Speech, pieces};
+
+/// What a parameter value means.
+#[derive(Clone, Copy, Debug, PartialEq, Eq)]
+pub enum Meaning {
+    /// A fraction of the units of a process.
+    Fraction,
+    /// A fraction of the units of one lot.
+    FractionOfLot,
+    /// A number of units in one lot.
+    CountInLot,
+    /// A mean number per unit of opportunity.
+    Rate,
+    /// Something this edition has no sentence for.
+    Other,
+}
+
+/// The nouns of a plan.
+pub struct Subject<'a> {
+    record: &'a Record,
+    /// What the parameter means.
+    pub meaning: Meaning,
+}
+
+impl<'a> Subject<'a> {
+    /// The subject of a record.
+    pub fn new(record: &'a Record) -> Self {
+        let meaning = match (
+            record.problem.family.as_str(),
+            record.problem.parameter.as_str(),
+        ) {
+            ("binomial" | "negative_binomial", "p") => Meaning::Fraction,
+            ("hypergeometric", "D") => Meaning::CountInLot,
+            ("hypergeometric", "p") => Meaning::FractionOfLot,
+            ("poisson", _) => Meaning::Rate,
+            _ => Meaning::Other,
+        };
+        Self { record, meaning }
+    }
+
+    /// What is counted, in the plural: `pouches with an open seal`.
+    pub fn counted(&self) -> String {
+        match &self.record.characteristic.counts {
+            Some(counts) => inline(counts),
+            None if self.meaning == Meaning::Rate => format!("occurrences of {}", self.name()),
+            None => format!("units with {}", self.name()),
+        }
+    }
+
+    /// The name of the characteristic.
+    pub fn name(&self) -> String {
+        inline(&self.record.characteristic.name)
+    }
+
+    /// One of what is counted, if it can be told from the plural: `pouch with an open seal`.
+    pub fn counted_one(&self) -> Option<String> {
+        let counts = self.record.characteristic.counts.as_deref()?;
+        let unit = self.record.characteristic.unit.as_deref()?;
+        let rest = counts.strip_prefix(plural(unit)?.as_str())?;
+        (rest.is_empty() || rest.starts_with(' ')).then(|| inline(&format!("{unit}{rest}")))
+    }
+
+    /// `no pouch with an open seal`, `1 pouch …`, `2 pouches …`.
+    pub fn some_counted(&self, number: u64) -> String {
+        match (number, self.counted_one()) {
+            (0, Some(one)) => format!("no {one}"),
+            (0, None) => format!("no {}", self.counted()),
+            (1, Some(one)) => format!("1 {one}"),
+            _ => format!("{} {}", grouped(number), self.counted()),
+        }
+    }
+
+    /// Units of test: `93 pouches`, `34 m²`.
+    pub fn units(&self, amount: Amount) -> String {
+        let number = amount_text(amount);
+        let Some(unit) = self.record.characteristic.unit.as_deref() else {
+            return match self.meaning {
+                Meaning::Rate => format!("{number} units of opportunity"),
+                _ if number == "1" => "1 unit".to_owned(),
+                _ => format!("{number} units"),
+            };
+        };
+        if number == "1" || self.meaning == Meaning::Rate {
+            return format!("{number} {}", inline(unit));
+        }
+        match plural(unit) {
+            Some(many) => format!("{number} {}", inline(&many)),
+            None => format!("{number} units ({})", inline(unit)),
+        }
+    }
+
+    /// Units of test without a number: `pouches`.
+    pub fn unit_plural(&self) -> String {
+        self.record
+            .characteristic
+            .unit
+            .as_deref()
+            .and_then(plural)
+            .map_or_else(|| "units".to_owned(), |many| inline(&many))
+    }
+
+    /// The parameter in words: `the fraction of pouches with an open seal`.
+    pub fn parameter(&self) -> String {
+        let counted = self.counted();
+        match self.meaning {
+            Meaning::Fraction => format!("the fraction of {counted}"),
+            Meaning::FractionOfLot => format!("the fraction of {counted} in the lot"),
+            Meaning::CountInLot => format!("the number of {counted} in the lot"),
+            Meaning::Rate => match &self.record.characteristic.unit {
+                Some(unit) => format!("the mean number of {counted} per {}", inline(unit)),
+                None => format!("the mean number of {counted} per unit of opportunity"),
+            },
+            Meaning::Other => inline(&self.record.problem.parameter),
+        }
+    }
+
+    /// A set as a clause: `the fraction of pouches with an open seal is 5 % or more`.
+    pub fn clause(&self, set: &str) -> String {
+        let value = |value: &Exact| self.value(value);
+        let speech = Speech {
+            value: &value,
+            least: Some(Exact::zero()),
+            greatest: self.greatest(),
+            counted: self.meaning == Meaning::CountInLot,
+        };
+        match speech.set(set) {
+            Some(said) => format!("{} is {said}", self.parameter()),
+            None => format!("{} lies in `{set}`", self.parameter()),
+        }
+    }
+
+    /// What is judged: the lot, or the process where the plan says that the claim is about the process.
+    pub fn judged(&self) -> &'static str {
+        let scope = self
+            .record
+            .declared
+            .get("population")
+            .and_then(|block| block.get("scope"));
+        match scope.and_then(serde_json::Value::as_str) {
+            Some("process") => "process",
+            _ => "lot",
+        }
+    }
+
+    /// The single end that separates a one-sided set from the rest: `5 %`.
+    pub fn boundary(&self, set: &str) -> Option<String> {
+        let inner = |end: &End, outermost: Option<Exact>| Some(&end.value) != outermost.as_ref();
+        let all = pieces(set);
+        let [Piece::Between(low, high)] = all.as_slice() else {
+            return None;
+        };
+        let low = low.as_ref().filter(|end| inner(end, Some(Exact::zero())));
+        let high = high.as_ref().filter(|end| inner(end, self.greatest()));
+        match (low, high) {
+            (Some(end), None) | (None, Some(end)) => Some(self.value(&end.value)),
+            _ => None,
+        }
+    }
+
+    fn greatest(&self) -> Option<Exact> {
+        match self.meaning {
+            Meaning::Fraction | Meaning::FractionOfLot => Some(Exact::one()),
+            Meaning::CountInLot => self.record.design.lot_size.map(Exact::from),
+            Meaning::Rate | Meaning::Other => None,
+        }
+    }
+
+    /// A parameter value for people: `5 %`, `50 ppm`, `11 of 240 (4.58 %)`, `12`, `0.5`.
+    pub fn value(&self, value: &Exact) -> String {
+        match self.meaning {
+            Meaning::Fraction => fraction(value),
+            Meaning::FractionOfLot => match self.units_of_lot(value) {
+                Some(of_lot) => format!("{of_lot} ({})", fraction(value)),
+                None => fraction(value),
+            },
+            _ => plain(value),
+        }
+    }
+
+    /// `11 of 240`, where a fraction of the lot is a whole number of units.
+    fn units_of_lot(&self, value: &Exact) -> Option<String> {
+        let lot = self.record.design.lot_size?;
+        let count = (value * &Exact::from(lot)).to_u64()?;
+        Some(format!("{} of {}", grouped(count), grouped(lot)))
+    }
+
+    /// A double of the record as the exact value that was meant.
+    pub fn meant(&self, value: f64) -> Option<Exact> {
+        if self.meaning == Meaning::FractionOfLot {
+            // The record holds the double nearest to D/N; the lattice value itself was meant.
+            let lot = Exact::from(self.record.design.lot_size?);
+            let count = &Exact::from_f64(value)? * &lot;
+            let nearest = (&count + &Exact::fraction(1, 2)?).floor();
+            return nearest.checked_div(&lot);
+        }
+        as_written(value)
+    }
+
+    /// A parameter value of the record for people.
+    ///
+    /// The record holds infinities as the largest double.
+    pub fn figure(&self, value: f64) -> String {
+        match self.meant(value).filter(|_| value.abs() < f64::MAX) {
+            Some(exact) => self.value(&exact),
+            None if value > 0.0 => "∞".to_owned(),
+            None => "−∞".to_owned(),
+        }
+    }
+
+    /// A parameter value that was computed and not written, with four digits, cut to the stated side.
+    pub fn computed(&self, value: f64, toward: Toward) -> String {
+        let Some(exact) = self.meant(value) else {
+            return self.figure(value);
+        };
+        match self.meaning {
+            Meaning::Fraction => fraction_rounded(&exact, toward),
+            Meaning::FractionOfLot | Meaning::CountInLot => self.value(&exact),
+            _ => significant(&exact, 4, toward),
+        }
+    }
+}
+
+/// The tested coordinate of a point of the record.
+pub fn coordinate(record: &Record, point: &crate::record::Point) -> Option<f64> {
+    point
+        .get(&record.problem.parameter)
+        .or_else(|| point.values().next())
+        .copied()
+}
+
+/// The usual English plural of a one-word or compound noun; units with digits or signs have none.
+fn plural(unit: &str) -> Option<String> {
+    let plain = unit.len() > 1
+        && unit
+            .chars()
+            .all(|c| c.is_alphabetic() || matches!(c, ' ' | '-'));
+    if !plain {
+        return None;
+    }
+    let sibilant = ["s", "x", "z", "ch", "sh"]
+        .iter()
+        .any(|end| unit.ends_with(end));
+    if sibilant {
+        return Some(format!("{unit}es"));
+    }
+    match unit.strip_suffix('y') {
+        Some(stem) if !stem.ends_with(['a', 'e', 'i', 'o', 'u']) => Some(format!("{stem}ies")),
+        _ => Some(format!("{unit}s")),
+    }
+}
+
+fn below(value: &Exact, numerator: i64, denominator: i64) -> bool {
+    Exact::fraction(numerator, denominator).is_some_and(|limit| *value < limit)
+}
+
+/// A fraction in per cent, or in parts per million below 0.01 %.
+fn fraction(value: &Exact) -> String {
+    if !value.is_zero() && below(value, 1, 10_000) {
+        format!("{} ppm", plain(&(value * &Exact::from(1_000_000u64))))
+    } else {
+        format!("{} %", plain(&(value * &Exact::from(100u64))))
+    }
+}
+
+fn fraction_rounded(value: &Exact, toward: Toward) -> String {
+    if !value.is_zero() && below(value, 1, 10_000) {
+        format!(
+            "{} ppm",
+            significant(&(value * &Exact::from(1_000_000u64)), 4, toward)
+        )
+    } else {
+        format!(
+            "{} %",
+            significant(&(value * &Exact::from(100u64)), 4, toward)
+        )
+    }
+}
+
+/// The exact decimal where it is short, else four digits.
+fn plain(value: &Exact) -> String {
+    let text = value.to_string();
+    if text.contains('/') || text.len() > 10 {
+        significant(value, 4, Toward::Nearest)
+    } else if value.is_whole() {
+        value.to_u64().map_or(text, grouped)
+    } else {
+        text
+    }
+}
+
+/// An amount of units.
+pub fn amount_text(amount: Amount) -> String {
+    match amount {
+        Amount::Count(count) => grouped(count),
+        Amount::Real(real) => {
+            as_written(real).map_or_else(|| "∞".to_owned(), |exact| plain(&exact))
+        }
+    }
+}
+
+/// A whole number with thin groups of three from five digits on.
+pub fn grouped(number: u64) -> String {
+    let digits = number.to_string();
+    if digits.len() < 5 {
+        return digits;
+    }
+    let mut out = String::new();
+    for (at, digit) in digits.chars().enumerate() {
+        if at > 0 && (digits.len() - at).is_multiple_of(3) {
+            out.push('\u{202F}');
+        }
+        out.push(digit);
+    }
+    out
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+
+    #[test]
+    fn plurals() {
+        for (one, many) in [
+            ("pouch", "pouches"),
+            ("unit", "units"),
+            ("assembly", "assemblies"),
+            ("tray", "trays"),
+        ] {
+            assert_eq!(plural(one).as_deref(), Some(many));
+        }
+        assert_eq!(plural("m²"), None);
+        assert_eq!(plural("m"), None);
+    }
+
+    #[test]
+    fn large_counts_are_grouped() {
+        assert_eq!(grouped(1000), "1000");
+        assert_eq!(grouped(60000), "60\u{202F}000");
+        assert_eq!(grouped(1234567), "1\u{202F}234\u{202F}567");
+    }
+
+    #[test]
+    fn fractions_for_people() {
+        let value = |text: &str| fraction(&text.parse().unwrap());
+        assert_eq!(value("0.05"), "5 %");
+        assert_eq!(value("0.00005"), "50 ppm");
+        assert_eq!(value("0.0002"), "0.02 %");
+        assert_eq!(value("0"), "0 %");
+    }
+}
