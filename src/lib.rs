@@ -127,6 +127,12 @@ fn in_words(obstacle: &Obstacle, problem: &Problem) -> Diagnostic {
             "every bounded region fits this null, and none is largest".to_owned(),
         )
         .with_help("state the region with `critical_region`"),
+        Obstacle::NoRectification => at(
+            "not-yet-derived",
+            problem.region_span,
+            "outgoing quality is derived only where lots are released at small counts".to_owned(),
+        )
+        .with_help("leave `rectification` out, or state the null so that small counts release the lot"),
         Obstacle::Stopped => at(
             "stopped",
             problem.amount_span,

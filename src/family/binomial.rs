@@ -68,6 +68,24 @@ impl Family for Binomial {
         second_route::binomial(super::count(amount), p.to_f64(), q.to_f64(), event)
     }
 
+    /// Of n units with x nonconforming ones every order is equally likely: the first m are a random sample.
+    fn earlier(&self, count: u64, later: &Exact, earlier: &Exact) -> Option<Law> {
+        Some(law::hypergeometric(
+            super::count(later),
+            count,
+            super::count(earlier),
+        ))
+    }
+
+    /// x · [ln(p₁/p₀) − ln(q₁/q₀)] + n · ln(q₁/q₀).
+    fn log_likelihood_ratio(&self, one: &Value, other: &Value) -> Option<(f64, f64)> {
+        let (p, other_p) = (super::fraction(one), super::fraction(other));
+        let rest = |p: &Exact| (&Exact::one() - p).to_f64();
+        let of_units = libm::log(rest(&p) / rest(&other_p));
+        let of_count = libm::log(p.to_f64() / other_p.to_f64()) - of_units;
+        (of_units.is_finite() && of_count.is_finite()).then_some((of_count, of_units))
+    }
+
     /// t ln(t/p) + (1−t) ln((1−t)/(1−p)).
     fn divergence(&self, mean: f64, at: &Value) -> Option<f64> {
         let p = super::fraction(at);

@@ -3,7 +3,7 @@
 use super::{AmountKind, Family, Registration, Settings};
 use crate::kernel::enclosure::Enclosure;
 use crate::kernel::exact::Exact;
-use crate::kernel::law::{Law, Linear, Ratio, RatioLaw};
+use crate::kernel::law::{self, Law};
 use crate::kernel::region::Region;
 use crate::kernel::second_route::{self, SecondFigure};
 use crate::space::{Lattice, LineSet, Value};
@@ -79,32 +79,12 @@ impl Family for Hypergeometric {
         Exact::from(self.lot)
     }
 
-    /// P(X = k+1)/P(X = k) = (D−k)(n−k) / ((k+1)(N−D−n+k+1)).
     fn law(&self, at: &Value, amount: &Exact) -> Law {
-        let nonconforming = self.nonconforming(at);
-        let sample = super::count(amount).min(self.lot);
-        let low = (nonconforming + sample).saturating_sub(self.lot);
-        let high = nonconforming.min(sample);
-        if low == high {
-            return Law::Point(low);
-        }
-        let mode =
-            (u128::from(nonconforming) + 1) * (u128::from(sample) + 1) / (u128::from(self.lot) + 2);
-        let conforming_unseen = self.lot as i64 - nonconforming as i64 - sample as i64;
-        Law::Ratios(RatioLaw {
-            low,
-            high: Some(high),
-            start: (mode as u64).clamp(low, high),
-            ratio: Ratio {
-                above: [
-                    Linear::falling(nonconforming as i64),
-                    Linear::falling(sample as i64),
-                ],
-                below: [Linear::rising(1), Linear::rising(conforming_unseen + 1)],
-                scale: Exact::one(),
-            },
-            first: None,
-        })
+        law::hypergeometric(
+            self.lot,
+            self.nonconforming(at),
+            super::count(amount).min(self.lot),
+        )
     }
 
     fn slope(&self, _count: u64, _at: &Value, _amount: &Exact) -> Option<Enclosure> {
@@ -135,6 +115,35 @@ impl Family for Hypergeometric {
             super::count(amount).min(self.lot),
             event,
         )
+    }
+
+    /// The units of an earlier stage are a random sample of those of all stages so far.
+    fn earlier(&self, count: u64, later: &Exact, earlier: &Exact) -> Option<Law> {
+        Some(law::hypergeometric(
+            super::count(later),
+            count,
+            super::count(earlier),
+        ))
+    }
+
+    /// A further stage is drawn from what is left of the lot.
+    fn second_route_further(
+        &self,
+        at: &Value,
+        (inspected, found): (&Exact, u64),
+        further: &Exact,
+        event: &Region,
+    ) -> SecondFigure {
+        second_route::hypergeometric(
+            self.lot.saturating_sub(super::count(inspected)),
+            self.nonconforming(at).saturating_sub(found),
+            super::count(further),
+            event,
+        )
+    }
+
+    fn log_likelihood_ratio(&self, _one: &Value, _other: &Value) -> Option<(f64, f64)> {
+        None
     }
 
     fn divergence(&self, _mean: f64, _at: &Value) -> Option<f64> {

@@ -106,6 +106,23 @@ pub trait Family: Debug + Send + Sync {
     fn expected_count(&self, at: &Value, amount: &Exact) -> f64;
     /// The probability of an event by the second route.
     fn second_route(&self, at: &Value, amount: &Exact, event: &Region) -> SecondFigure;
+    /// The law of the count after an earlier amount of inspection, given the count after a later one: by sufficiency it
+    /// does not depend on the parameter. `None` where inspection has no stages.
+    fn earlier(&self, count: u64, later: &Exact, earlier: &Exact) -> Option<Law>;
+    /// The probability of an event about the count of a further amount of inspection, given what was seen before, by the
+    /// second route.
+    fn second_route_further(
+        &self,
+        at: &Value,
+        _seen: (&Exact, u64),
+        further: &Exact,
+        event: &Region,
+    ) -> SecondFigure {
+        self.second_route(at, further, event)
+    }
+    /// The log likelihood ratio of one value against another as coefficients of the count and of the amount, for ratio
+    /// tests. `None` where it is not of this form.
+    fn log_likelihood_ratio(&self, one: &Value, other: &Value) -> Option<(f64, f64)>;
     /// Kullback–Leibler divergence, per unit of inspection, from a mean outcome of `mean` per unit to the law at a value:
     /// Chernoff's exponent of the tail beyond that mean. `None` where no such bound is derived.
     fn divergence(&self, mean: f64, at: &Value) -> Option<f64>;

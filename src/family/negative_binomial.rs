@@ -108,6 +108,14 @@ impl Family for NegativeBinomial {
         second_route::negative_binomial(super::count(amount), p.to_f64(), q.to_f64(), event)
     }
 
+    fn earlier(&self, _count: u64, _later: &Exact, _earlier: &Exact) -> Option<Law> {
+        None
+    }
+
+    fn log_likelihood_ratio(&self, _one: &Value, _other: &Value) -> Option<(f64, f64)> {
+        None
+    }
+
     fn divergence(&self, _mean: f64, _at: &Value) -> Option<f64> {
         None
     }

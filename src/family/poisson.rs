@@ -3,7 +3,7 @@
 use super::{AmountKind, Family, Registration, Settings, quotient, scaled};
 use crate::kernel::enclosure::Enclosure;
 use crate::kernel::exact::Exact;
-use crate::kernel::law::{Law, Linear, Ratio, RatioLaw};
+use crate::kernel::law::{self, Law, Linear, Ratio, RatioLaw};
 use crate::kernel::ratio_sum;
 use crate::kernel::region::Region;
 use crate::kernel::second_route::{self, SecondFigure};
@@ -86,6 +86,20 @@ impl Family for Poisson {
             .finite()
             .map_or(f64::INFINITY, |rate| (rate * amount).to_f64());
         second_route::poisson(mean, event)
+    }
+
+    /// Given their number, nonconformities lie independently and evenly over the whole amount.
+    fn earlier(&self, count: u64, later: &Exact, earlier: &Exact) -> Option<Law> {
+        Some(law::binomial(count, &earlier.checked_div(later)?))
+    }
+
+    /// x · ln(λ₁/λ₀) − t · (λ₁ − λ₀).
+    fn log_likelihood_ratio(&self, one: &Value, other: &Value) -> Option<(f64, f64)> {
+        let (rate, other_rate) = (one.to_f64(), other.to_f64());
+        let of_count = libm::log(rate / other_rate);
+        of_count
+            .is_finite()
+            .then_some((of_count, other_rate - rate))
     }
 
     /// t ln(t/λ) − t + λ.

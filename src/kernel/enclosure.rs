@@ -98,6 +98,12 @@ impl Enclosure {
 
     /// Sum, rounded outwards.
     pub fn plus(self, other: Self) -> Self {
+        if other == Self::ZERO {
+            return self;
+        }
+        if self == Self::ZERO {
+            return other;
+        }
         Self {
             lower: (self.lower + other.lower).next_down(),
             upper: (self.upper + other.upper).next_up(),

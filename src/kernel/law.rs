@@ -229,6 +229,32 @@ impl Law {
     }
 }
 
+/// The law of the number of nonconforming units in a sample drawn without replacement from a lot:
+/// P(X = k+1)/P(X = k) = (D−k)(n−k) / ((k+1)(N−D−n+k+1)). `nonconforming` and `sample` are at most `lot`.
+pub fn hypergeometric(lot: u64, nonconforming: u64, sample: u64) -> Law {
+    let low = (nonconforming + sample).saturating_sub(lot);
+    let high = nonconforming.min(sample);
+    if low >= high {
+        return Law::Point(high);
+    }
+    let mode = (u128::from(nonconforming) + 1) * (u128::from(sample) + 1) / (u128::from(lot) + 2);
+    let conforming_unseen = lot as i64 - nonconforming as i64 - sample as i64;
+    Law::Ratios(RatioLaw {
+        low,
+        high: Some(high),
+        start: (mode as u64).clamp(low, high),
+        ratio: Ratio {
+            above: [
+                Linear::falling(nonconforming as i64),
+                Linear::falling(sample as i64),
+            ],
+            below: [Linear::rising(1), Linear::rising(conforming_unseen + 1)],
+            scale: Exact::one(),
+        },
+        first: None,
+    })
+}
+
 /// `base` to a whole power, exactly.
 pub fn power(base: &Exact, exponent: u64) -> Exact {
     let mut result = BigInt::one();

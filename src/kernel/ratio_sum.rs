@@ -78,11 +78,7 @@ fn of_waiting_law(
                 &Region::between(range.from, to),
             ),
         };
-        sum = if sum == Enclosure::ZERO {
-            part
-        } else {
-            sum.plus(part)
-        };
+        sum = sum.plus(part);
     }
     sum.as_probability()
 }

@@ -93,6 +93,16 @@ impl Region {
         Self::union_of(self.ranges.iter().chain(&other.ranges).copied())
     }
 
+    /// What both sets hold.
+    pub fn intersection(&self, other: &Self) -> Self {
+        Self::union_of(
+            other
+                .ranges
+                .iter()
+                .flat_map(|range| self.within(range.from, range.to).ranges),
+        )
+    }
+
     /// All counts that it does not hold.
     pub fn complement(&self) -> Self {
         let mut gaps = Vec::with_capacity(self.ranges.len() + 1);

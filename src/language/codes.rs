@@ -93,11 +93,20 @@ pub const CODES: &[(&str, &str)] = &[
     ),
     ("sample-larger-than-lot", "a sample larger than its lot"),
     ("second-document", "a second plan in the same file"),
+    (
+        "sequential-cannot-start",
+        "a ratio test without a usable alternative or end",
+    ),
     ("set-syntax", "a set expression that cannot be read"),
     (
         "space-outside-domain",
         "a parameter space that leaves what the parameter can be",
     ),
+    (
+        "stage-limits-overlap",
+        "counts that both end a stage with rejection and with retention",
+    ),
+    ("stage-limits-turned", "limits of a stage on the wrong side"),
     ("stopped", "solving that was stopped"),
     ("supersedes-itself", "a revision that supersedes itself"),
     ("tab-indent", "a tab where YAML wants spaces"),
@@ -105,6 +114,7 @@ pub const CODES: &[(&str, &str)] = &[
     ("tails-need-a-continuous-family", "unbiased tails on counts"),
     ("too-deep", "a plan nested too deep"),
     ("too-many", "more entries than a plan may have"),
+    ("two-designs", "two ways of sampling in one plan"),
     ("unknown-family", "a family that does not exist"),
     ("unknown-key", "a key that does not exist"),
     ("unknown-parameter", "a name that the family does not know"),

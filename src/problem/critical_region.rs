@@ -3,8 +3,9 @@
 use crate::family::Registration;
 use crate::kernel::exact::Exact;
 use crate::kernel::region::{Range, Region};
-use crate::language::diagnostic::Diagnostic;
+use crate::language::diagnostic::{Diagnostic, Located};
 use crate::language::plan::Test;
+use crate::language::set::SetExpression;
 use crate::space::LineSet;
 
 use super::sets::{self, Vocabulary};
@@ -16,15 +17,7 @@ pub(super) fn given_region(
     problems: &mut Vec<Diagnostic>,
 ) -> Option<Region> {
     let declared = test.critical_region.as_ref()?;
-    let vocabulary = Vocabulary {
-        name: registration.statistic,
-        others: registration.parameters,
-        family: registration.name,
-    };
-    let set = sets::solve(&declared.value, &vocabulary)
-        .map_err(|found| problems.extend(found))
-        .ok()?;
-    let region = counts_in(&set);
+    let region = counts_of(declared, registration, problems)?;
     if region.is_empty() {
         problems.push(
             Diagnostic::error(
@@ -40,6 +33,23 @@ pub(super) fn given_region(
         return None;
     }
     Some(region)
+}
+
+/// The counts that an expression in the statistic holds.
+pub(super) fn counts_of(
+    declared: &Located<SetExpression>,
+    registration: &Registration,
+    problems: &mut Vec<Diagnostic>,
+) -> Option<Region> {
+    let vocabulary = Vocabulary {
+        name: registration.statistic,
+        others: registration.parameters,
+        family: registration.name,
+    };
+    sets::solve(&declared.value, &vocabulary)
+        .map_err(|found| problems.extend(found))
+        .ok()
+        .map(|set| counts_in(&set))
 }
 
 /// The counts in a set of numbers.

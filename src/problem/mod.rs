@@ -7,6 +7,7 @@ mod observation;
 mod pose;
 mod sets;
 mod shape;
+mod stages;
 
 use std::sync::Arc;
 
@@ -21,6 +22,7 @@ pub use grid::default_points;
 pub use observation::Observation;
 pub use pose::pose;
 pub use shape::Shape;
+pub use stages::Stage;
 
 /// A problem that makes sense: the null is a non-empty proper part of the space, requirements lie in the alternative.
 #[derive(Clone, Debug)]
@@ -45,6 +47,8 @@ pub struct Problem {
     pub amount: AmountRequest,
     /// A region to audit instead of deriving one.
     pub given_region: Option<Region>,
+    /// Stages of a staged or sequential design; empty for a single sample.
+    pub stages: Vec<Stage>,
     /// How many tries the null gets: one more than the retests allowed.
     pub tries: u32,
     /// Requirements on the power.

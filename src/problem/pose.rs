@@ -9,6 +9,7 @@ use crate::space::Value;
 
 use super::critical_region::given_region;
 use super::declared::sets_of;
+use super::stages::stages;
 use super::{AmountRequest, Observation, Problem, Shape};
 
 /// Poses the problem of a plan, or says everything that is wrong with it.
@@ -25,15 +26,27 @@ pub fn pose(plan: &Plan) -> Result<Problem, Vec<Diagnostic>> {
     let sets = sets_of(plan, family.as_ref(), &mut problems);
     let observation = observation(test, family.as_ref(), &mut problems);
     let region = given_region(test, registration, &mut problems);
-    not_yet(test, &mut problems);
     tails(test, &mut problems);
-    let (Some((amount, amount_span)), Some(sets), true) = (amount, sets, problems.is_empty())
-    else {
+    rectification(test, family.as_ref(), &observation, &mut problems);
+    let Some(sets) = sets else {
         return Err(problems);
     };
     let shape = Shape::of(&sets.null, &sets.alternative, family.trend());
+    let seen = observed(&shape, &observation, family.as_ref());
+    let stages = stages(test, &seen, &observation, family.as_ref(), &mut problems);
+    let amount = match stages.last() {
+        Some(last) => Some((
+            AmountRequest::Given(last.cumulative.clone()),
+            last_stage_span(test),
+        )),
+        None => amount,
+    };
+    let (Some((amount, amount_span)), true) = (amount, problems.is_empty()) else {
+        return Err(problems);
+    };
     Ok(Problem {
-        shape: observed(&shape, &observation, family.as_ref()),
+        shape: seen,
+        stages,
         tails: test
             .tails
             .as_ref()
@@ -60,6 +73,12 @@ pub fn pose(plan: &Plan) -> Result<Problem, Vec<Diagnostic>> {
         amount_span,
         family: family.into(),
     })
+}
+
+fn last_stage_span(test: &Test) -> Span {
+    let sequential = test.sequential.as_ref().map(|sequential| sequential.span);
+    let stage = test.stages.last().map(|stage| stage.size.span);
+    sequential.or(stage).unwrap_or(test.span)
 }
 
 fn unknown_family(name: &Located<String>) -> Diagnostic {
@@ -234,24 +253,6 @@ fn default_tails(shape: &Shape) -> Tails {
     }
 }
 
-/// What the language can say and the solver cannot derive yet.
-fn not_yet(test: &Test, problems: &mut Vec<Diagnostic>) {
-    let staged = test.stages.first().map(|stage| stage.size.span);
-    let sequential = test.sequential.as_ref().map(|sequential| sequential.span);
-    for (span, what) in [(staged, "`stages`"), (sequential, "`sequential`")] {
-        if let Some(span) = span {
-            problems.push(
-                Diagnostic::error(
-                    "not-yet-derived",
-                    span,
-                    format!("{what} can be written but is not derived yet"),
-                )
-                .with_help("the nearest plan that works has one `sample_size` and no stages"),
-            );
-        }
-    }
-}
-
 fn tails(test: &Test, problems: &mut Vec<Diagnostic>) {
     if let Some(tails) = &test.tails
         && tails.value == Tails::Unbiased
@@ -264,5 +265,41 @@ fn tails(test: &Test, problems: &mut Vec<Diagnostic>) {
             )
             .with_help("use `tails: equal` or `tails: joint`"),
         );
+    }
+}
+
+/// Sorting needs a lot that holds the sample, units judged without error, and a fraction nonconforming.
+fn rectification(
+    test: &Test,
+    family: &dyn Family,
+    observation: &Observation,
+    problems: &mut Vec<Diagnostic>,
+) {
+    let Some(lot) = &test.rectification_lot_size else {
+        return;
+    };
+    let counts_units = family.registration().amount_kind == AmountKind::Units;
+    if !counts_units || family.lattice().is_some() || *observation != Observation::Perfect {
+        problems.push(
+            Diagnostic::error(
+                "not-yet-derived",
+                lot.span,
+                "sorting of lots is derived for `binomial` plans without inspection errors only",
+            )
+            .with_help("leave `rectification` out, or use `family: binomial`"),
+        );
+    }
+    let sample = test.sample_size.as_ref().map(|size| &size.value);
+    if let Some(SampleSize::Given(sample)) = sample
+        && *sample > lot.value
+    {
+        problems.push(Diagnostic::error(
+            "sample-larger-than-lot",
+            lot.span,
+            format!(
+                "a sample of {sample} cannot be drawn from a lot of {}",
+                lot.value
+            ),
+        ));
     }
 }

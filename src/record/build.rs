@@ -10,7 +10,7 @@ use crate::kernel::exact::Exact;
 use crate::kernel::region::Region;
 use crate::language::plan::{AcceptWhen, Plan};
 use crate::problem::{Observation, Problem};
-use crate::solving::{Placed, PowerPoint, Search, Solution};
+use crate::solving::{Placed, PowerPoint, Search, Solution, SolvedStage};
 use crate::space::Value;
 
 use super::content::*;
@@ -60,7 +60,24 @@ pub fn build(plan: &Plan, problem: &Problem, solution: &Solution) -> Record {
             .search
             .as_ref()
             .map(|search| sample_size_search(problem, search)),
-        rectification: None,
+        rectification: solution.rectification.as_ref().map(|found| Rectification {
+            lot_size: found.lot_size,
+            aoql: Located {
+                value: found.aoql.upper(),
+                lower: found.aoql.lower(),
+                upper: found.aoql.upper(),
+                at: point(problem.family.as_ref(), &found.aoql_at),
+            },
+            rows: found
+                .rows
+                .iter()
+                .map(|row| RectificationRow {
+                    at: point(problem.family.as_ref(), &row.at),
+                    aoq: Bounds::of_risk(row.outgoing),
+                    ati: Bounds::of_risk(row.inspected),
+                })
+                .collect(),
+        }),
         retest: solution.size_of_one_try.map(|single| Retest {
             times: u64::from(problem.tries) - 1,
             size_of_one_try: Bounds::of_risk(single),
@@ -126,34 +143,86 @@ fn amount_of(problem: &Problem, amount: &Exact) -> Amount {
 
 fn design(problem: &Problem, solution: &Solution) -> Design {
     let waits = problem.family.registration().amount_kind == AmountKind::Nonconforming;
+    let staged = !solution.stages.is_empty();
     Design {
-        kind: "single".to_owned(),
-        sample_size: (!waits).then(|| amount_of(problem, &solution.amount)),
+        kind: if staged { "staged" } else { "single" }.to_owned(),
+        sample_size: (!waits && !staged).then(|| amount_of(problem, &solution.amount)),
         stop_at_nonconforming: waits.then(|| solution.amount.to_u64()).flatten(),
         lot_size: problem
             .family
             .lattice()
             .and_then(|_| problem.family.most().to_u64()),
-        stages: Vec::new(),
+        stages: solution
+            .stages
+            .iter()
+            .map(|stage| Stage {
+                cumulative_size: amount_of(problem, &stage.amount),
+                retain_null: limit(problem, stage, &stage.retain),
+                reject_null: limit(problem, stage, &stage.reject),
+            })
+            .collect(),
     }
+}
+
+/// Counts of a stage that can occur there, as one range.
+fn limit(problem: &Problem, stage: &SolvedStage, region: &Region) -> Option<CountRange> {
+    let counted = problem.family.registration().amount_kind == AmountKind::Units;
+    let most = counted.then(|| stage.amount.to_u64()).flatten();
+    let cut = region.within(0, most);
+    ranges(&cut).first().copied()
 }
 
 fn critical_region(problem: &Problem, solution: &Solution) -> CriticalRegion {
     let statistic = problem.family.registration().statistic;
     let outcomes = solution.outcomes;
     let retained = solution.region.complement();
+    let staged = |region: fn(&SolvedStage) -> &Region| staged_words(solution, statistic, region);
+    let (reject_when, retain_when) = if solution.stages.is_empty() {
+        (
+            solution.region.in_words(statistic, outcomes),
+            retained.in_words(statistic, outcomes),
+        )
+    } else {
+        (staged(|stage| &stage.reject), staged(|stage| &stage.retain))
+    };
+    let given = problem.given_region.is_some()
+        || (!problem.stages.is_empty()
+            && problem.stages.iter().all(|stage| stage.reject.is_some()));
     CriticalRegion {
         statistic: statistic.to_owned(),
-        reject_when: solution.region.in_words(statistic, outcomes),
-        retain_when: retained.in_words(statistic, outcomes),
+        reject_when,
+        retain_when,
         intervals: ranges(&solution.region),
-        source: if problem.given_region.is_some() {
-            "given"
-        } else {
-            "derived"
-        }
-        .to_owned(),
+        source: if given { "given" } else { "derived" }.to_owned(),
     }
+}
+
+/// The limits of all stages; neighbouring stages with the same limit share one clause.
+fn staged_words(
+    solution: &Solution,
+    statistic: &str,
+    region: fn(&SolvedStage) -> &Region,
+) -> String {
+    let mut clauses: Vec<(String, &Exact, &Exact)> = Vec::new();
+    for stage in &solution.stages {
+        let words = region(stage).in_words(statistic, (0, None));
+        match clauses.last_mut() {
+            Some(clause) if clause.0 == words => clause.2 = &stage.amount,
+            _ => clauses.push((words, &stage.amount, &stage.amount)),
+        }
+    }
+    let parts: Vec<String> = clauses
+        .into_iter()
+        .filter(|(words, ..)| words != "none")
+        .map(|(words, from, to)| {
+            if from == to {
+                format!("{words} after {from}")
+            } else {
+                format!("{words} after {from} to {to}")
+            }
+        })
+        .collect();
+    parts.join("; ")
 }
 
 fn ranges(region: &Region) -> Vec<CountRange> {
@@ -207,7 +276,7 @@ fn power_row(problem: &Problem, found: &PowerPoint) -> PowerRow {
         upper: rejection.upper(),
         envelope: found.envelope,
         lot_accepted: released(accepted, found.in_null, problem.accept_when),
-        expected_sample_size: None,
+        expected_sample_size: found.expected_amount.map(Bounds::of_risk),
     }
 }
 

@@ -1,33 +1,33 @@
 //! The quality that is accepted with a given probability, where acceptance is monotone.
 
 use crate::kernel::exact::Exact;
-use crate::kernel::region::Region;
 use crate::space::Value;
 
 use super::operating::{Operating, last_true};
-use super::region::{Form, form_of};
+use super::region::Form;
+use super::rule::Rule;
 
 /// The parameter value at which lots are released with a probability; on a lattice the largest value with at least that
 /// probability. `None` where acceptance is not monotone or never crosses the probability.
 pub fn accepted_with(
-    operating: &Operating<'_>,
-    region: &Region,
+    rule: &Rule<'_>,
     released_when_rejected: bool,
     probability: f64,
 ) -> Option<f64> {
+    let operating = &rule.operating;
     let problem = operating.problem;
-    let form = form_of(region, operating.outcomes());
+    let form = rule.form();
     if !matches!(form, Form::LowerTail | Form::UpperTail) || !problem.observation.is_sharp() {
         return None;
     }
     let rejection_falls = (form == Form::LowerTail) == operating.is_rising();
     let acceptance_falls = rejection_falls == released_when_rejected;
     let acceptance = |at: &Value| {
-        let rejected = operating.rejection(region, &problem.observation.images(at).0);
+        let observed = problem.observation.images(at).0;
         let released = if released_when_rejected {
-            rejected
+            rule.rejection(&observed)
         } else {
-            operating.retention(region, &problem.observation.images(at).0)
+            rule.retention(&observed)
         };
         released.middle()
     };

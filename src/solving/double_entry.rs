@@ -3,12 +3,11 @@
 use std::collections::BTreeSet;
 
 use crate::kernel::enclosure::Enclosure;
-use crate::kernel::region::Region;
 use crate::kernel::second_route::TOLERANCE;
 use crate::language::plan::AcceptWhen;
 use crate::space::Value;
 
-use super::operating::Operating;
+use super::rule::Rule;
 use super::solution::Solution;
 
 /// Probabilities below this are compared by size only: doubles end near it.
@@ -31,16 +30,13 @@ pub struct DoubleEntry {
 
 impl DoubleEntry {
     /// Computes every figure of a solution again.
-    pub fn of(operating: &Operating<'_>, solution: &Solution) -> Self {
+    pub fn of(rule: &Rule<'_>, solution: &Solution) -> Self {
         let mut entry = Self::default();
-        let region = &solution.region;
-        let problem = operating.problem;
+        let problem = rule.operating.problem;
         let observed = |at: &Value, value: Enclosure| {
             // Of the images of a point, the one the figure was computed at.
             let (least, most) = problem.observation.images(at);
-            let distance = |image: &Value| {
-                (operating.rejection(region, image).middle() - value.middle()).abs()
-            };
+            let distance = |image: &Value| (rule.rejection(image).middle() - value.middle()).abs();
             if distance(&most) < distance(&least) {
                 most
             } else {
@@ -53,59 +49,36 @@ impl DoubleEntry {
                 .iter()
                 .map(|outcome| &outcome.attained),
         ) {
-            entry.rejection(
-                operating,
-                region,
-                &observed(&placed.at, placed.value),
-                placed.value,
-            );
+            entry.rejection(rule, &observed(&placed.at, placed.value), placed.value);
         }
         for point in &solution.power {
             let image = observed(&point.at, point.rejection);
-            entry.rejection(operating, region, &image, point.rejection);
+            entry.rejection(rule, &image, point.rejection);
             if problem.accept_when == AcceptWhen::NullRetained {
-                entry.retention(operating, region, &image, point.retention);
+                entry.retention(rule, &image, point.retention);
             }
         }
         entry
     }
 
-    fn rejection(
-        &mut self,
-        operating: &Operating<'_>,
-        region: &Region,
-        observed: &Value,
-        first: Enclosure,
-    ) {
-        let single = self.second(operating, region, observed);
+    fn rejection(&mut self, rule: &Rule<'_>, observed: &Value, first: Enclosure) {
+        let (single, route) = rule.second_rejection(observed);
+        self.routes.insert(route);
         let mut rest = 1.0;
         let mut sum = 0.0;
-        for _ in 0..operating.problem.tries {
+        for _ in 0..rule.operating.problem.tries {
             sum += rest;
             rest *= 1.0 - single;
         }
         self.compare(first, single * sum, observed);
     }
 
-    fn retention(
-        &mut self,
-        operating: &Operating<'_>,
-        region: &Region,
-        observed: &Value,
-        first: Enclosure,
-    ) {
-        let single = self.second(operating, &region.complement(), observed);
-        let second = (1..operating.problem.tries).fold(single, |product, _| product * single);
+    fn retention(&mut self, rule: &Rule<'_>, observed: &Value, first: Enclosure) {
+        let (single, route) = rule.second_retention(observed);
+        self.routes.insert(route);
+        let tries = rule.operating.problem.tries;
+        let second = (1..tries).fold(single, |product, _| product * single);
         self.compare(first, second, observed);
-    }
-
-    fn second(&mut self, operating: &Operating<'_>, event: &Region, observed: &Value) -> f64 {
-        let figure = operating
-            .problem
-            .family
-            .second_route(observed, &operating.amount, event);
-        self.routes.insert(figure.route);
-        figure.value
     }
 
     fn compare(&mut self, first: Enclosure, second: f64, at: &Value) {

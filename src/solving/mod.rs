@@ -8,9 +8,12 @@ mod general;
 mod judgement;
 mod obstacle;
 mod operating;
+mod rectification;
 mod region;
+mod rule;
 mod sample_size;
 mod solution;
+mod staged;
 mod tail_bound;
 mod two_sided;
 
@@ -19,9 +22,14 @@ pub use envelope::envelope;
 pub use extremum::{Extremum, Goal, extremum};
 pub use obstacle::Obstacle;
 pub use operating::Operating;
+pub use rectification::{Rectified, RectifiedPoint};
 pub use region::{Form, derive, form_of};
+pub use rule::Rule;
 pub use sample_size::{Search, smallest};
-pub use solution::{Optimality, Placed, PowerPoint, RequirementOutcome, Solution, solve};
+pub use solution::{
+    Optimality, Placed, PowerPoint, RequirementOutcome, Solution, SolvedStage, solve,
+};
+pub use staged::StagedRule;
 
 /// Where long work says how far it is. Pure callers use [`Silent`].
 pub trait Progress: Sync {

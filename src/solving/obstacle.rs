@@ -26,6 +26,8 @@ pub enum Obstacle {
     },
     /// The region would have no largest count.
     NoLargestRegion,
+    /// Sorting of lots is derived only where lots are released at small counts.
+    NoRectification,
     /// The caller asked to stop.
     Stopped,
 }

@@ -1,21 +1,19 @@
 //! The smallest amount of inspection that meets the level and every requirement, the amount from which on every larger
 //! one does too, and why one less fails.
 
-use std::cmp::Ordering;
-
 use crate::family::AmountKind;
 use crate::kernel::exact::Exact;
 use crate::kernel::region::Region;
-use crate::problem::{Problem, Requirement, Shape};
+use crate::problem::{Problem, Shape};
 use crate::space::{LineSet, Value};
 
 use super::Progress;
 use super::envelope::envelope;
-use super::extremum::{Extremum, Goal, extremum};
 use super::judgement::Level;
 use super::obstacle::Obstacle;
 use super::operating::{Operating, last_true};
 use super::region::{Form, derive, form_of};
+use super::rule::Rule;
 use super::tail_bound::surely_enough;
 
 /// What the search found.
@@ -70,38 +68,6 @@ pub fn smallest(
     }
 }
 
-/// How a requirement fares.
-pub fn attained(
-    operating: &Operating<'_>,
-    region: &Region,
-    requirement: &Requirement,
-) -> Result<(Extremum, bool), Obstacle> {
-    let observed = operating.problem.observation.image(&requirement.set);
-    let infimum = extremum(operating, region, &observed, Goal::Infimum);
-    let level = Level::new(requirement.at_least.clone());
-    let met = match level.against(infimum.value) {
-        Some(order) => order != Ordering::Less,
-        None => operating.is_at_least(region, &infimum.at, &level)?,
-    };
-    Ok((infimum, met))
-}
-
-/// Whether the size of a region is at most the level.
-pub fn within_level(
-    operating: &Operating<'_>,
-    region: &Region,
-) -> Result<(Extremum, bool), Obstacle> {
-    let problem = operating.problem;
-    let null = problem.observation.image(&problem.null);
-    let size = extremum(operating, region, &null, Goal::Supremum);
-    let alpha = operating.alpha();
-    let within = match alpha.against(size.value) {
-        Some(order) => order != Ordering::Greater,
-        None => operating.is_at_most(region, &size.at, &alpha)?,
-    };
-    Ok((size, within))
-}
-
 struct Amounts<'a> {
     problem: &'a Problem,
     step: &'a Exact,
@@ -140,7 +106,7 @@ impl<'a> Amounts<'a> {
         let amount = self.amount(index);
         let region = match &self.problem.given_region {
             Some(region) => {
-                let (size, within) = within_level(&operating, region)?;
+                let (size, within) = Rule::single(operating, region.clone()).size()?;
                 return Ok((!within).then(|| {
                     format!(
                         "at {amount} the size of the given region is {:.6}, above {}",
@@ -157,13 +123,15 @@ impl<'a> Amounts<'a> {
                 self.problem.alpha
             )));
         }
+        let rule = Rule::single(operating, region);
         for requirement in &self.problem.requirements {
-            let (infimum, met) = attained(&operating, &region, requirement)?;
+            let (infimum, met) = rule.attains(&requirement.set, &requirement.at_least)?;
             if !met {
                 let family = &self.problem.family;
                 return Ok(Some(format!(
                     "at {amount} the region {} has power {:.6} where {}, and {} is required",
-                    region.in_words(family.registration().statistic, operating.outcomes()),
+                    rule.region()
+                        .in_words(family.registration().statistic, rule.operating.outcomes()),
                     infimum.value.lower(),
                     requirement.set.in_words(family.parameter()),
                     requirement.at_least
@@ -215,7 +183,8 @@ impl<'a> Amounts<'a> {
         let least = self.least_for(region);
         if form == Form::LowerTail {
             let too_large = last_true(least, least, self.most, |index| {
-                within_level(&self.at(index), region).map(|(_, within)| !within)
+                let rule = Rule::single(self.at(index), region.clone());
+                rule.size().map(|(_, within)| !within)
             })?;
             let first = too_large.map_or(least, |index| index + 1);
             if first > self.most {

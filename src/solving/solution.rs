@@ -11,11 +11,13 @@ use super::Progress;
 use super::acceptance::accepted_with;
 use super::double_entry::DoubleEntry;
 use super::envelope::envelope;
-use super::extremum::{Extremum, Goal, extremum};
+use super::extremum::{Extremum, Goal};
 use super::obstacle::Obstacle;
 use super::operating::Operating;
-use super::region::{Form, derive, form_of};
-use super::sample_size::{Search, attained, smallest, within_level};
+use super::rectification::{Rectified, rectified};
+use super::region::{Form, derive};
+use super::rule::Rule;
+use super::sample_size::{Search, smallest};
 
 /// Acceptance probabilities at which the quality is reported.
 const ACCEPTED: [(&str, f64); 3] = [("0.95", 0.95), ("0.50", 0.5), ("0.10", 0.1)];
@@ -27,8 +29,10 @@ pub struct Solution {
     pub amount: Exact,
     /// Smallest and largest possible outcome.
     pub outcomes: (u64, Option<u64>),
-    /// The critical region within the possible outcomes.
+    /// The critical region within the possible outcomes; of stages, that of the last.
     pub region: Region,
+    /// The stages; none for a single sample.
+    pub stages: Vec<SolvedStage>,
     /// Its form.
     pub form: Form,
     /// In what sense it is best.
@@ -47,8 +51,21 @@ pub struct Solution {
     pub search: Option<Search>,
     /// Size of one try, where several are allowed.
     pub size_of_one_try: Option<Enclosure>,
+    /// Outgoing quality where lots that are not released are sorted.
+    pub rectification: Option<Rectified>,
     /// The second computation of every figure.
     pub double_entry: DoubleEntry,
+}
+
+/// A stage with all its limits.
+#[derive(Clone, Debug)]
+pub struct SolvedStage {
+    /// Amount inspected when the stage is complete.
+    pub amount: Exact,
+    /// Counts at which the null is rejected.
+    pub reject: Region,
+    /// Counts at which the null is retained.
+    pub retain: Region,
 }
 
 /// An extremum with its place as a true parameter value.
@@ -76,7 +93,9 @@ pub struct PowerPoint {
     pub rejection: Enclosure,
     /// Probability that it is retained, at the same observed value.
     pub retention: Enclosure,
-    /// Highest rejection probability of any test of the level.
+    /// Expected amount of inspection, for stages.
+    pub expected_amount: Option<Enclosure>,
+    /// Highest rejection probability of any test of the level, on the largest amount of inspection.
     pub envelope: Option<f64>,
 }
 
@@ -110,47 +129,69 @@ pub fn solve(problem: &Problem, progress: &dyn Progress) -> Result<Solution, Obs
         }
     };
     let operating = Operating::new(problem, amount);
-    let outcomes = operating.outcomes();
-    let region = match &problem.given_region {
-        Some(region) => region.within(outcomes.0, outcomes.1),
-        None => derive(&operating)?,
+    let rule = if problem.stages.is_empty() {
+        let outcomes = operating.outcomes();
+        let region = match &problem.given_region {
+            Some(region) => region.within(outcomes.0, outcomes.1),
+            None => derive(&operating)?,
+        };
+        if region.is_empty() {
+            return Err(unreachable_level(&operating, progress));
+        }
+        Rule::single(operating, region)
+    } else {
+        Rule::staged(operating)?
     };
-    if region.is_empty() {
-        return Err(unreachable_level(&operating, progress));
-    }
-    let form = form_of(&region, outcomes);
-    let (size, within) = within_level(&operating, &region)?;
+    let (size, within_level) = rule.size()?;
     let mut requirements = Vec::with_capacity(problem.requirements.len());
     for requirement in &problem.requirements {
-        let (infimum, met) = attained(&operating, &region, requirement)?;
+        let (infimum, met) = rule.attains(&requirement.set, &requirement.at_least)?;
         requirements.push(RequirementOutcome {
-            attained: placed(&operating, infimum, &requirement.set),
+            attained: placed(problem, infimum, &requirement.set),
             met,
         });
     }
-    let power = power(&operating, &region, progress)?;
+    let power = power(&rule, progress)?;
+    let rectification = match problem.rectified_lot {
+        Some(lot) => match rectified(&rule, lot, &power) {
+            Some(found) => Some(found),
+            None => return Err(Obstacle::NoRectification),
+        },
+        None => None,
+    };
     let mut solution = Solution {
-        outcomes,
-        form,
+        rectification,
+        outcomes: rule.operating.outcomes(),
+        form: rule.form(),
         optimality: optimality(problem),
-        size_of_one_try: (problem.tries > 1).then(|| operating.single(&region, &size.at)),
-        size: placed(&operating, size, &problem.null),
-        within_level: within,
+        size_of_one_try: (problem.tries > 1)
+            .then(|| rule.operating.single(&rule.region(), &size.at)),
+        size: placed(problem, size, &problem.null),
+        within_level,
         power,
         requirements,
-        acceptance: acceptance(&operating, &region),
+        acceptance: acceptance(&rule),
         search,
         double_entry: DoubleEntry::default(),
-        amount: operating.amount.clone(),
-        region,
+        amount: rule.operating.amount.clone(),
+        region: rule.region(),
+        stages: rule.stages().map_or_else(Vec::new, |staged| {
+            staged
+                .stages()
+                .map(|(amount, reject, retain)| SolvedStage {
+                    amount: amount.clone(),
+                    reject: reject.clone(),
+                    retain: retain.clone(),
+                })
+                .collect()
+        }),
     };
-    solution.double_entry = DoubleEntry::of(&operating, &solution);
+    solution.double_entry = DoubleEntry::of(&rule, &solution);
     Ok(solution)
 }
 
 /// The extremum with its place in the declared parameter.
-fn placed(operating: &Operating<'_>, found: Extremum, declared: &LineSet) -> Placed {
-    let problem = operating.problem;
+fn placed(problem: &Problem, found: Extremum, declared: &LineSet) -> Placed {
     let at = problem
         .observation
         .preimage(&found.at, found.at_lower_end, declared);
@@ -167,25 +208,21 @@ fn placed(operating: &Operating<'_>, found: Extremum, declared: &LineSet) -> Pla
     }
 }
 
-fn power(
-    operating: &Operating<'_>,
-    region: &Region,
-    progress: &dyn Progress,
-) -> Result<Vec<PowerPoint>, Obstacle> {
-    let points = points(operating.problem);
+fn power(rule: &Rule<'_>, progress: &dyn Progress) -> Result<Vec<PowerPoint>, Obstacle> {
+    let points = points(rule.operating.problem);
     let total = points.len() as u64;
     let mut table = Vec::with_capacity(points.len());
     for (done, at) in points.into_iter().enumerate() {
         if !progress.step("points of the power function", done as u64, Some(total)) {
             return Err(Obstacle::Stopped);
         }
-        table.push(power_at(operating, region, at)?);
+        table.push(power_at(rule, at)?);
     }
     Ok(table)
 }
 
-fn power_at(operating: &Operating<'_>, region: &Region, at: Value) -> Result<PowerPoint, Obstacle> {
-    let problem = operating.problem;
+fn power_at(rule: &Rule<'_>, at: Value) -> Result<PowerPoint, Obstacle> {
+    let problem = rule.operating.problem;
     let in_null = problem.null.contains(&at);
     let (least, most) = problem.observation.images(&at);
     let observed = if least == most {
@@ -196,13 +233,14 @@ fn power_at(operating: &Operating<'_>, region: &Region, at: Value) -> Result<Pow
         } else {
             Goal::Infimum
         };
-        extremum(operating, region, &LineSet::between(least, most), goal).at
+        rule.extremum(&LineSet::between(least, most), goal).at
     };
     Ok(PowerPoint {
         in_null,
-        rejection: operating.rejection(region, &observed),
-        retention: operating.retention(region, &observed),
-        envelope: envelope(operating, &at)?,
+        rejection: rule.rejection(&observed),
+        retention: rule.retention(&observed),
+        expected_amount: rule.expected_amount(&observed),
+        envelope: envelope(&rule.operating, &at)?,
         at,
     })
 }
@@ -247,13 +285,12 @@ fn points(problem: &Problem) -> Vec<Value> {
     default_points(&problem.space, &ends, lattice.as_ref())
 }
 
-fn acceptance(operating: &Operating<'_>, region: &Region) -> Vec<(&'static str, f64)> {
-    let released_when_rejected = operating.problem.accept_when == AcceptWhen::NullRejected;
+fn acceptance(rule: &Rule<'_>) -> Vec<(&'static str, f64)> {
+    let released_when_rejected = rule.operating.problem.accept_when == AcceptWhen::NullRejected;
     ACCEPTED
         .iter()
         .filter_map(|&(name, probability)| {
-            accepted_with(operating, region, released_when_rejected, probability)
-                .map(|at| (name, at))
+            accepted_with(rule, released_when_rejected, probability).map(|at| (name, at))
         })
         .collect()
 }
@@ -270,6 +307,13 @@ fn optimality(problem: &Problem) -> Optimality {
         };
     }
     let family = problem.family.total_positivity();
+    if !problem.stages.is_empty() {
+        return Optimality {
+            claim: "none: the stages are given by the plan; a limit left out is the largest that keeps the level",
+            theorem: "none is needed: the size is proved for the stages as they stand".into(),
+            scope: "the envelope is that of all tests on the full amount of inspection; stages spend less on average".into(),
+        };
+    }
     match &problem.shape {
         Shape::Below { .. } | Shape::Above { .. } => Optimality {
             claim: "uniformly most powerful",
