@@ -8,9 +8,9 @@
 use std::fs;
 use std::path::PathBuf;
 
-use assize::language::read::read;
 use assize::language::render::{grade_word, render};
 use assize::language::source::Source;
+use assize::{Silent, compile};
 
 fn plans() -> Vec<PathBuf> {
     let folder = concat!(env!("CARGO_MANIFEST_DIR"), "/tests/plans");
@@ -51,7 +51,7 @@ fn expected(text: &str) -> Vec<String> {
 fn every_fault_is_found_where_it_stands() {
     let mut wrong = String::new();
     let plans = plans();
-    assert!(plans.len() >= 15, "the plans are there");
+    assert!(plans.len() >= 28, "the plans are there");
     for path in plans {
         let name = path.file_name().unwrap().to_string_lossy().into_owned();
         let text = fs::read_to_string(&path).unwrap();
@@ -60,9 +60,9 @@ fn every_fault_is_found_where_it_stands() {
             name.starts_with("good-") || !expected.is_empty(),
             "{name} expects nothing"
         );
-        let reading = read(&text);
+        let compilation = compile(&text, &Silent).unwrap();
         let source = Source::new(&text);
-        for found in &reading.diagnostics {
+        for found in &compilation.diagnostics {
             let place = format!(
                 "{}:{} {}[{}]",
                 found.span.line,
@@ -83,8 +83,8 @@ fn every_fault_is_found_where_it_stands() {
         for missed in &expected {
             wrong.push_str(&format!("not found: {name}: {missed}\n"));
         }
-        let has_errors = reading.diagnostics.iter().any(|found| found.is_error());
-        assert_eq!(reading.plan.is_none(), has_errors, "{name}");
+        let has_errors = compilation.diagnostics.iter().any(|found| found.is_error());
+        assert_eq!(compilation.record.is_none(), has_errors, "{name}");
     }
     assert!(wrong.is_empty(), "\n{wrong}");
 }
