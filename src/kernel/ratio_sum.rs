@@ -41,7 +41,7 @@ pub fn probability(law: &Law, event: &Region) -> Enclosure {
     }
 }
 
-/// The same by pairs of doubles alone: relative width about 4e-16, the last rounding to doubles. For decisions that
+/// The same by pairs of doubles alone: relative width about 1e-15, the last roundings to doubles. For decisions that
 /// doubles leave open.
 pub fn probability_in_double_doubles(law: &Law, event: &Region) -> Enclosure {
     match law {
@@ -434,7 +434,7 @@ impl<'a, T: Arithmetic> Walk<'a, T> {
         let relative = self.inside.relative_error()
             + self.total.relative_error()
             + self.total.remainder / self.total.value.lead()
-            + 4.0 * f64::UNIT.max(T::UNIT);
+            + 2.0 * f64::UNIT.max(T::UNIT);
         let missing = self.inside.remainder / inside.lead();
         let mut lower = value * (1.0 - relative);
         let mut upper = value * (1.0 + relative + missing);
