@@ -13,7 +13,7 @@ use crate::record::Record;
 use super::curve::{self, Layout};
 use super::escape::is_harmless;
 use super::page::status_word;
-use super::{ReportError, STYLE, environment};
+use super::{COLOURS, ReportError, STYLE, environment};
 
 /// The report in HTML.
 ///
@@ -28,10 +28,26 @@ pub fn html(markdown: &str, record: &Record) -> Result<String, ReportError> {
     let environment = environment()?;
     Ok(environment.get_template("report.html")?.render(context! {
         title => text(&format!("{} {} {}", record.plan.id, record.plan.revision, record.plan.title)),
-        style => STYLE,
+        style => format!("{COLOURS}{STYLE}{}", curve::style()),
+        running => running_title(record),
         contents => body.contents,
         body => body.html,
     })?)
+}
+
+/// What stands at the foot of every printed page. Only characters that mean nothing to a style sheet pass.
+fn running_title(record: &Record) -> String {
+    let safe = |text: &str| -> String {
+        text.chars()
+            .filter(|c| c.is_ascii_alphanumeric() || matches!(c, '.' | '_' | '-'))
+            .collect()
+    };
+    format!(
+        "{}, revision {}, plan {}",
+        safe(&record.plan.id),
+        safe(&record.plan.revision),
+        safe(&record.plan.sha256)
+    )
 }
 
 /// Text with the characters that HTML reads as markup replaced.
@@ -89,6 +105,9 @@ enum Label {
 #[derive(Default)]
 struct Table {
     headings: Vec<String>,
+    /// Where the opening of the row stands among the events.
+    row: usize,
+    words: String,
     in_head: bool,
     column: usize,
 }
@@ -141,6 +160,7 @@ impl<'a> Sections<'a> {
         {
             last.push_str(&words);
         }
+        self.table.words.push_str(&words);
         if self.label == Label::Reading {
             let label = words.strip_suffix(':').unwrap_or(&words).to_owned();
             self.events.push(Event::Text(label.into()));
@@ -216,6 +236,7 @@ impl<'a> Sections<'a> {
             }
             Tag::TableRow => {
                 self.table.column = 0;
+                self.table.row = self.events.len();
                 self.raw("<tr>");
             }
             Tag::TableCell => self.start_cell(),
@@ -343,11 +364,11 @@ impl<'a> Sections<'a> {
 
     fn draw_curve(&mut self) {
         self.curve_next = false;
-        let wide = curve::svg(self.record, Layout::Page);
-        let narrow = curve::svg(self.record, Layout::Phone);
+        let wide = curve::within_page(self.record, Layout::Page);
+        let narrow = curve::within_page(self.record, Layout::Phone);
         self.raw(format!(
             "<figure>\n<div class=\"wide\">{wide}</div>\n<div class=\"narrow\">{narrow}</div>\n<figcaption>{}</figcaption>\n</figure>\n",
-            text(&curve::caption(self.record))
+            curve::title(self.record)
         ));
     }
 
@@ -365,6 +386,7 @@ impl<'a> Sections<'a> {
     }
 
     fn start_cell(&mut self) {
+        self.table.words.clear();
         if self.table.in_head {
             self.table.headings.push(String::new());
             self.raw("<th scope=\"col\">");
@@ -382,6 +404,14 @@ impl<'a> Sections<'a> {
     }
 
     fn end_cell(&mut self) {
+        // The rows of the null subset are shaded, as it is in the curve.
+        if self.table.column == 1
+            && self.table.words == "null"
+            && self.quoted == 0
+            && let Some(row) = self.events.get_mut(self.table.row)
+        {
+            *row = Event::InlineHtml("<tr class=\"in-null\">".into());
+        }
         if self.table.in_head {
             self.raw("</th>");
         } else {

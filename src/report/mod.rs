@@ -8,6 +8,8 @@ mod power_table;
 pub mod round;
 mod words;
 
+use words::claim;
+
 use minijinja::value::Serde;
 use minijinja::{Environment, UndefinedBehavior, Value};
 
@@ -19,6 +21,7 @@ pub use html::html;
 const REPORT: &str = include_str!("../../templates/report.md.j2");
 const PAGE: &str = include_str!("../../templates/report.html.j2");
 const STYLE: &str = include_str!("../../templates/report.css");
+const COLOURS: &str = include_str!("../../templates/colours.css");
 
 /// The heading above which the report's hash is taken.
 pub const SEAL_HEADING: &str = "## Seal\n";

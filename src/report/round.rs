@@ -259,6 +259,13 @@ fn normalised(value: &Exact) -> (Exact, i32) {
     (Exact::from_rational(mantissa), exponent)
 }
 
+/// A probability to the nearest tenth of a per cent, for descriptions of a picture.
+pub fn nearest(probability: f64) -> String {
+    finite(probability).map_or_else(unknown, |exact| {
+        format!("{} %", fixed(&in_percent(&exact), 1, Toward::Nearest))
+    })
+}
+
 /// An expected number of units, rounded up to one place.
 pub fn amount_up(value: f64) -> String {
     finite(value).map_or_else(unknown, |exact| fixed(&exact, 1, Toward::Up))
