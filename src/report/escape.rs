@@ -13,23 +13,30 @@ pub fn inline(text: &str) -> String {
         if at > 0 {
             out.push(' ');
         }
-        for character in word.chars() {
-            push_escaped(&mut out, character);
+        let mut rest = word.chars();
+        while let Some(character) = rest.next() {
+            push_escaped(&mut out, character, rest.clone().next());
         }
     }
     out
 }
 
-fn push_escaped(out: &mut String, character: char) {
+fn push_escaped(out: &mut String, character: char, next: Option<char>) {
     if is_hidden(character) {
         // A character that reverses or hides its neighbours would make the paper say something else than the file.
         let _ = write!(out, "(U+{:04X})", u32::from(character));
         return;
     }
-    if matches!(
-        character,
-        '\\' | '`' | '*' | '_' | '[' | ']' | '<' | '>' | '&' | '|' | '~' | '#' | '$' | '^'
-    ) {
+    let opens = match character {
+        // Before a space, a digit or a sign these open neither a tag nor an entity.
+        '<' => {
+            next.is_some_and(|next| next.is_ascii_alphabetic() || matches!(next, '/' | '!' | '?'))
+        }
+        '&' => next.is_some_and(|next| next.is_ascii_alphanumeric() || next == '#'),
+        '\\' | '`' | '*' | '_' | '[' | ']' | '|' | '~' | '#' | '$' => true,
+        _ => false,
+    };
+    if opens {
         out.push('\\');
     }
     out.push(character);

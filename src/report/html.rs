@@ -288,7 +288,12 @@ impl<'a> Sections<'a> {
             TagEnd::TableRow => self.raw("</tr>\n"),
             TagEnd::TableCell => self.end_cell(),
             TagEnd::Paragraph if self.curve_next && self.quoted == 0 => {
-                self.events.push(Event::End(TagEnd::Paragraph));
+                // The sentence that refers to this edition makes room for the curve itself.
+                while let Some(event) = self.events.pop() {
+                    if event == Event::Start(Tag::Paragraph) {
+                        break;
+                    }
+                }
                 self.draw_curve();
             }
             other => self.events.push(Event::End(other)),
@@ -375,7 +380,7 @@ impl<'a> Sections<'a> {
     fn start_table(&mut self) {
         self.table = Table::default();
         let caption = text(&self.last_heading);
-        let kind = if self.last_heading == "Table of the power function" {
+        let kind = if self.last_heading.starts_with("Table of") {
             "figures"
         } else {
             "prose"

@@ -86,8 +86,9 @@ fn row(record: &Record, subject: &Subject<'_>, row: &PowerRow) -> Row {
         rejects,
         accepted,
         envelope: row.envelope.map_or_else(|| "–".to_owned(), round::risk),
-        expected_size: row
-            .expected_sample_size
-            .map_or_else(|| "–".to_owned(), |bounds| round::amount_up(bounds.upper)),
+        expected_size: row.expected_sample_size.map_or_else(
+            || "–".to_owned(),
+            |bounds| round::expected_amount(bounds.lower, bounds.upper),
+        ),
     }
 }

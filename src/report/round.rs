@@ -266,9 +266,17 @@ pub fn nearest(probability: f64) -> String {
     })
 }
 
-/// An expected number of units, rounded up to one place.
-pub fn amount_up(value: f64) -> String {
-    finite(value).map_or_else(unknown, |exact| fixed(&exact, 1, Toward::Up))
+/// An expected number of units to one place: the nearest where both bounds agree on it, else the upper rounded up.
+pub fn expected_amount(lower: f64, upper: f64) -> String {
+    let (Some(lower), Some(upper)) = (finite(lower), finite(upper)) else {
+        return unknown();
+    };
+    let nearest = fixed(&upper, 1, Toward::Nearest);
+    if fixed(&lower, 1, Toward::Nearest) == nearest {
+        nearest
+    } else {
+        fixed(&upper, 1, Toward::Up)
+    }
 }
 
 /// A relative difference or width: two significant digits, rounded up, with a power of ten.

@@ -156,7 +156,7 @@ impl<'a> Drawing<'a> {
                     ),
                 };
                 (from <= greatest && to >= least).then(|| {
-                    let half = if self.is_lattice() {
+                    let half = if self.subject.is_lattice() {
                         self.half_step()
                     } else {
                         0.0
@@ -169,13 +169,6 @@ impl<'a> Drawing<'a> {
                 })
             })
             .collect()
-    }
-
-    fn is_lattice(&self) -> bool {
-        matches!(
-            self.subject.meaning,
-            Meaning::CountInLot | Meaning::FractionOfLot
-        )
     }
 
     /// Half the width of a column where the parameter moves in steps.
@@ -245,24 +238,41 @@ impl<'a> Drawing<'a> {
         }
     }
 
+    /// The envelope over the alternative, up to the nearest point of the null on either side.
     fn envelope(&mut self) {
-        let accepts = accepts_by_rejecting(self.record);
-        let mut run: Vec<Place> = Vec::new();
         let mut runs: Vec<Vec<Place>> = Vec::new();
+        let mut before: Option<Place> = None;
+        let mut inside = false;
         for (at, row) in &self.points {
-            match row.envelope.filter(|_| row.subset == "alternative") {
-                Some(envelope) => run.push(Place {
-                    x: self.across.place(*at),
-                    y: self
-                        .up
-                        .place(if accepts { envelope } else { 1.0 - envelope }),
-                }),
-                None => runs.push(std::mem::take(&mut run)),
+            let place = row
+                .envelope
+                .map(|envelope| self.envelope_place(*at, envelope));
+            let alternative = row.subset == "alternative";
+            if let Some(place) = place.filter(|_| alternative || inside) {
+                if !inside {
+                    runs.push(before.into_iter().collect());
+                }
+                if let Some(run) = runs.last_mut() {
+                    run.push(place);
+                }
             }
+            inside = alternative && place.is_some();
+            before = place;
         }
-        runs.push(run);
         for run in runs.iter().filter(|run| run.len() > 1) {
             let _ = writeln!(self.out, "<path class=\"envelope\" d=\"{}\"/>", path(run));
+        }
+    }
+
+    fn envelope_place(&self, at: f64, envelope: f64) -> Place {
+        let accepted = if accepts_by_rejecting(self.record) {
+            envelope
+        } else {
+            1.0 - envelope
+        };
+        Place {
+            x: self.across.place(at),
+            y: self.up.place(accepted),
         }
     }
 
@@ -275,7 +285,7 @@ impl<'a> Drawing<'a> {
                 y: self.up.place(row.lot_accepted.value),
             })
             .collect();
-        if self.is_lattice() {
+        if self.subject.is_lattice() {
             let bottom = self.measures.plot[3];
             for place in &places {
                 self.line("stem", place.x, bottom, place.x, place.y);

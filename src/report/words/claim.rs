@@ -28,7 +28,7 @@ pub fn sentence(record: &Record, subject: &Subject<'_>) -> String {
     }
     let shown = match subject.boundary(&record.problem.null_subset) {
         Some(boundary) => format!("be better than {boundary}"),
-        None => format!("be in the alternative, where {alternative}"),
+        None => format!("lie in the alternative, where {alternative}"),
     };
     format!(
         "A {judged} that passes is shown to {shown}: while {null}, it passes with a probability of at most {size}. That bounds nonconforming units, never excludes them."

@@ -8,8 +8,9 @@ use super::subject::Subject;
 /// The cautions that apply, the most important first.
 pub fn cautions(record: &Record, subject: &Subject<'_>) -> Vec<String> {
     let counted = subject.counted();
+    let judged = subject.judged();
     let mut said = vec![
-        format!("An accepted lot may hold {counted}. Passing bounds how many there can plausibly be; it never shows that there are none."),
+        format!("An accepted {judged} may still have {counted}. Passing bounds how many there can plausibly be; it never shows that there are none."),
         "The sample sorts lots; it does not improve them. If all lots are alike, those accepted are no better than those refused.".to_owned(),
         "Failing does not prove a lot bad, nor passing prove it good: each says that the rule fixed beforehand was met or not.".to_owned(),
         "The risks hold for units drawn at random from the stated population, and for a lot made alike throughout. Mixed cavities, shifts or materials want a sample each.".to_owned(),
@@ -33,7 +34,8 @@ pub fn cautions(record: &Record, subject: &Subject<'_>) -> Vec<String> {
 pub fn first(record: &Record, subject: &Subject<'_>) -> Option<Vec<String>> {
     record.characteristic.hazard.as_ref()?;
     Some(vec![
-        format!("An accepted lot may still hold {}: the plan bounds them, never excludes them.", subject.counted()),
+        format!("An accepted {} may still have {}: the plan bounds them, never excludes them.", subject.judged(),
+            subject.counted()),
         "If not a single escape can be borne, a sample alone is not enough: inspect every unit or make the fault impossible.".to_owned(),
         "Law, standards, contracts and the responsible quality unit prevail over this report; the section on what the plan does not assure is part of it.".to_owned(),
     ])

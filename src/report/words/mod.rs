@@ -6,11 +6,14 @@ pub mod claim;
 pub mod declared;
 pub mod family;
 pub mod glossary;
+pub mod inspection;
 pub mod limits;
+pub mod rectification;
 pub mod risks;
 pub mod rule;
 pub mod sample;
 pub mod sets;
+pub mod stages;
 pub mod subject;
 
 use serde::Serialize;

@@ -101,6 +101,8 @@ fn risk(power: f64, at_least: f64, met: bool) -> String {
 /// The points of equal acceptance, each cut to the side on which its sentence stays true.
 fn acceptance(record: &Record, subject: &Subject<'_>) -> Vec<Fact> {
     let falls = !accepts_more_where_larger(record);
+    let better = if falls { "smaller" } else { "larger" };
+    let worse = if falls { "larger" } else { "smaller" };
     [
         ("probability_0.95_at", "95 %", true),
         ("probability_0.50_at", "50 %", true),
@@ -114,11 +116,19 @@ fn acceptance(record: &Record, subject: &Subject<'_>) -> Vec<Fact> {
         } else {
             Toward::Up
         };
-        let quality = subject.computed(at, toward);
-        Some(fact(
-            &format!("Accepted {share} of the time"),
-            format!("{quality} ({}).", subject.parameter()),
-        ))
+        let quality = format!(
+            "`{}` = {}",
+            record.problem.parameter,
+            subject.computed(at, toward)
+        );
+        let text = if subject.is_lattice() {
+            format!("The last value accepted at least as often is {quality}.")
+        } else if at_least {
+            format!("{quality}, and more often where it is {better}.")
+        } else {
+            format!("{quality}, and less often where it is {worse}.")
+        };
+        Some(fact(&format!("Accepted {share} of the time"), text))
     })
     .collect()
 }

@@ -4,6 +4,7 @@ use crate::record::{Amount, CountRange, Record};
 use crate::report::escape::inline;
 
 use super::sets::{Piece, pieces};
+use super::stages;
 use super::subject::{Subject, amount_text, grouped};
 
 /// What follows from an outcome.
@@ -46,22 +47,37 @@ fn outcome(record: &Record, subject: &Subject<'_>, rejects: bool, accepts: bool)
     let seen = if ranges.is_empty() {
         format!("`{symbols}` holds")
     } else {
-        seen(record, subject, &ranges)
+        subject.found(&ranges)
     };
     Outcome {
         seen,
         symbols: symbols.clone(),
         null: if rejects { "rejected" } else { "retained" },
         action: action.as_deref().map(inline),
-        imperative: action.as_deref().and_then(imperative).unwrap_or_else(|| {
-            if accepts {
-                "accept the lot"
-            } else {
-                "do not accept the lot"
-            }
-            .to_owned()
-        }),
+        imperative: action
+            .as_deref()
+            .and_then(imperative)
+            .unwrap_or_else(|| default_action(subject, accepts)),
     }
+}
+
+fn default_action(subject: &Subject<'_>, accepts: bool) -> String {
+    let judged = subject.judged();
+    if accepts {
+        format!("accept the {judged}")
+    } else {
+        format!("do not accept the {judged}")
+    }
+}
+
+/// What is done on acceptance, within a sentence: `release the lot`.
+pub fn accept_clause(record: &Record, subject: &Subject<'_>) -> String {
+    accepting(record, subject).imperative
+}
+
+/// What is done otherwise, within a sentence.
+pub fn refuse_clause(record: &Record, subject: &Subject<'_>) -> String {
+    refusing(record, subject).imperative
 }
 
 /// The largest possible value of the statistic, where it has one.
@@ -99,56 +115,6 @@ fn ranges_of(expression: &str, most: Option<u64>) -> Vec<CountRange> {
         .collect()
 }
 
-fn seen(record: &Record, subject: &Subject<'_>, ranges: &[CountRange]) -> String {
-    let inspected = record.critical_region.statistic == "n";
-    let said: Vec<String> = ranges
-        .iter()
-        .map(|range| {
-            if inspected {
-                numbers(*range)
-            } else {
-                counted(subject, *range)
-            }
-        })
-        .collect();
-    let said = said.join(", or ");
-    if inspected {
-        format!("{said} {} were inspected", subject.unit_plural())
-    } else if matches!(
-        ranges,
-        [CountRange {
-            from: None,
-            to: Some(0 | 1)
-        }] | [CountRange {
-            from: Some(1),
-            to: Some(1)
-        }]
-    ) {
-        format!("{said} is found")
-    } else {
-        format!("{said} are found")
-    }
-}
-
-fn counted(subject: &Subject<'_>, range: CountRange) -> String {
-    match (range.from, range.to) {
-        (None, Some(0)) => subject.some_counted(0),
-        (None, Some(most)) => format!("at most {}", subject.some_counted(most)),
-        (Some(from), Some(to)) if from == to => format!("exactly {}", subject.some_counted(from)),
-        _ => format!("{} {}", numbers(range), subject.counted()),
-    }
-}
-
-fn numbers(range: CountRange) -> String {
-    match (range.from, range.to) {
-        (None, None) => "any number of".to_owned(),
-        (None, Some(most)) => format!("{} or fewer", grouped(most)),
-        (Some(least), None) => format!("{} or more", grouped(least)),
-        (Some(from), Some(to)) if from == to => format!("exactly {}", grouped(from)),
-        (Some(from), Some(to)) => format!("{} to {}", grouped(from), grouped(to)),
-    }
-}
-
 /// A single sentence of the plan as a clause: `Release the lot.` becomes `release the lot`. Longer texts stay out of the
 /// sentence and are printed in full in the section on the decision.
 fn imperative(text: &str) -> Option<String> {
@@ -180,7 +146,7 @@ pub fn inspection(record: &Record, subject: &Subject<'_>) -> String {
         );
     }
     let Some(size) = design.sample_size else {
-        return "inspect stage by stage, as listed below".to_owned();
+        return format!("inspect {}", subject.unit_plural());
     };
     match design.lot_size {
         Some(lot) => format!(
@@ -200,6 +166,9 @@ pub fn inspection(record: &Record, subject: &Subject<'_>) -> String {
 
 /// The whole rule in one sentence.
 pub fn sentence(record: &Record, subject: &Subject<'_>) -> String {
+    if !record.design.stages.is_empty() {
+        return format!("{}.", capitalised(&stages::sentence(record, subject)));
+    }
     let (accept, refuse) = (accepting(record, subject), refusing(record, subject));
     let text = format!(
         "{}; if {}, {}; if {}, {}.",

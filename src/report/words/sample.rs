@@ -9,10 +9,7 @@ use crate::report::escape::inline;
 /// The facts of the search, or that there was none.
 pub fn facts(record: &Record, subject: &Subject<'_>) -> Vec<Fact> {
     let Some(search) = &record.sample_size_search else {
-        return vec![fact(
-            "Sample size",
-            "The plan states it; no smaller one was sought. The size and the power above are those of the stated sample.",
-        )];
+        return vec![fact("Sample size", stated(record))];
     };
     let chosen = record
         .design
@@ -68,5 +65,15 @@ fn amount(record: &Record, subject: &Subject<'_>, amount: Amount) -> String {
     match (record.design.stop_at_nonconforming, amount) {
         (Some(_), Amount::Count(count)) => format!("stopping at {}", subject.some_counted(count)),
         _ => subject.units(amount),
+    }
+}
+
+fn stated(record: &Record) -> &'static str {
+    if !record.design.stages.is_empty() {
+        "The plan states its stages; no smaller design was sought. Size and power are those of the stages together."
+    } else if record.design.stop_at_nonconforming.is_some() {
+        "The plan states when inspection stops; no earlier stop was sought. Size and power are those of the stated rule."
+    } else {
+        "The plan states it; no smaller one was sought. Size and power are those of the stated sample."
     }
 }

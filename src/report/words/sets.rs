@@ -81,8 +81,28 @@ pub struct Speech<'a> {
 impl Speech<'_> {
     /// A set as the end of a sentence that began `… is`: `5 % or more`, `from 1 % to 2 %`.
     pub fn set(&self, set: &str) -> Option<String> {
-        let said: Vec<String> = pieces(set).iter().map(|piece| self.piece(piece)).collect();
+        let pieces = pieces(set);
+        if let Some(hole) = self.hole(&pieces) {
+            return Some(format!("not {}", (self.value)(hole)));
+        }
+        let said: Vec<String> = pieces.iter().map(|piece| self.piece(piece)).collect();
         (!said.is_empty()).then(|| said.join(", or "))
+    }
+
+    /// The one value that a set leaves out.
+    fn hole<'p>(&self, pieces: &'p [Piece]) -> Option<&'p Exact> {
+        let [
+            Piece::Between(low, Some(left)),
+            Piece::Between(Some(right), high),
+        ] = pieces
+        else {
+            return None;
+        };
+        let outermost = |end: &Option<End>, most: Option<&Exact>| {
+            end.as_ref().is_none_or(|end| self.is_outermost(end, most))
+        };
+        let whole = outermost(low, self.least.as_ref()) && outermost(high, self.greatest.as_ref());
+        (whole && left.value == right.value && !left.closed && !right.closed).then_some(&left.value)
     }
 
     fn piece(&self, piece: &Piece) -> String {
@@ -154,6 +174,7 @@ mod tests {
         );
         assert_eq!(said("0.01 < p < 0.02"), "more than 1 % and less than 2 %");
         assert_eq!(said("0 <= p <= 1"), "any value possible");
+        assert_eq!(said("0 <= p < 0.1 or 0.1 < p <= 1"), "not 10 %");
         assert_eq!(said("p > 0.25"), "more than 25 %");
     }
 

@@ -1,7 +1,7 @@
 //! What the sentences are about: the counted units, the parameter, and how its values are said.
 
 use crate::kernel::exact::Exact;
-use crate::record::{Amount, Record};
+use crate::record::{Amount, CountRange, Record};
 use crate::report::escape::inline;
 use crate::report::round::{Toward, as_written, significant};
 
@@ -87,12 +87,55 @@ impl<'a> Subject<'a> {
                 _ => format!("{number} units"),
             };
         };
-        if number == "1" || self.meaning == Meaning::Rate {
+        // Short units of measure (m, kg, mL) have no plural.
+        let measure = self.meaning == Meaning::Rate && unit.chars().count() < 4;
+        if number == "1" || measure {
             return format!("{number} {}", inline(unit));
         }
         match plural(unit) {
             Some(many) => format!("{number} {}", inline(&many)),
+            None if self.meaning == Meaning::Rate => format!("{number} {}", inline(unit)),
             None => format!("{number} units ({})", inline(unit)),
+        }
+    }
+
+    /// An outcome: `at most 1 pouch with an open seal is found`, `209 or more boards were inspected`.
+    pub fn found(&self, ranges: &[CountRange]) -> String {
+        let inspected = self.record.critical_region.statistic == "n";
+        let said: Vec<String> = ranges
+            .iter()
+            .map(|range| {
+                if inspected {
+                    numbers(*range)
+                } else {
+                    self.some(*range)
+                }
+            })
+            .collect();
+        let said = said.join(", or ");
+        let one = matches!(
+            ranges,
+            [CountRange {
+                from: None,
+                to: Some(0 | 1)
+            }] | [CountRange {
+                from: Some(1),
+                to: Some(1)
+            }]
+        ) && self.counted_one().is_some();
+        if inspected {
+            format!("{said} {} were inspected", self.unit_plural())
+        } else {
+            format!("{said} {} found", if one { "is" } else { "are" })
+        }
+    }
+
+    fn some(&self, range: CountRange) -> String {
+        match (range.from, range.to) {
+            (None, Some(0)) => self.some_counted(0),
+            (None, Some(most)) => format!("at most {}", self.some_counted(most)),
+            (Some(from), Some(to)) if from == to => format!("exactly {}", self.some_counted(from)),
+            _ => format!("{} {}", numbers(range), self.counted()),
         }
     }
 
@@ -149,6 +192,11 @@ impl<'a> Subject<'a> {
         }
     }
 
+    /// Whether the parameter takes only so many values, evenly spaced.
+    pub fn is_lattice(&self) -> bool {
+        matches!(self.meaning, Meaning::CountInLot | Meaning::FractionOfLot)
+    }
+
     /// The single end that separates a one-sided set from the rest: `5 %`.
     pub fn boundary(&self, set: &str) -> Option<String> {
         let inner = |end: &End, outermost: Option<Exact>| Some(&end.value) != outermost.as_ref();
@@ -159,7 +207,7 @@ impl<'a> Subject<'a> {
         let low = low.as_ref().filter(|end| inner(end, Some(Exact::zero())));
         let high = high.as_ref().filter(|end| inner(end, self.greatest()));
         match (low, high) {
-            (Some(end), None) | (None, Some(end)) => Some(self.value(&end.value)),
+            (Some(end), None) | (None, Some(end)) => Some(self.value_in_place(&end.value)),
             _ => None,
         }
     }
@@ -182,6 +230,25 @@ impl<'a> Subject<'a> {
             },
             _ => plain(value),
         }
+    }
+
+    /// A value with where it is counted: `12 in the lot`, `0.5 per m²`.
+    fn value_in_place(&self, value: &Exact) -> String {
+        let said = self.value(value);
+        match (self.meaning, &self.record.characteristic.unit) {
+            (Meaning::CountInLot, _) => format!("{said} in the lot"),
+            (Meaning::Rate, Some(unit)) => format!("{said} per {}", inline(unit)),
+            _ => said,
+        }
+    }
+
+    /// A point in symbols: `p = 5 %`.
+    pub fn point(&self, value: f64) -> String {
+        format!(
+            "`{}` = {}",
+            self.record.problem.parameter,
+            self.figure(value)
+        )
     }
 
     /// `11 of 240`, where a fraction of the lot is a whole number of units.
@@ -224,6 +291,16 @@ impl<'a> Subject<'a> {
             Meaning::FractionOfLot | Meaning::CountInLot => self.value(&exact),
             _ => significant(&exact, 4, toward),
         }
+    }
+}
+
+fn numbers(range: CountRange) -> String {
+    match (range.from, range.to) {
+        (None, None) => "any number of".to_owned(),
+        (None, Some(most)) => format!("{} or fewer", grouped(most)),
+        (Some(least), None) => format!("{} or more", grouped(least)),
+        (Some(from), Some(to)) if from == to => format!("exactly {}", grouped(from)),
+        (Some(from), Some(to)) => format!("{} to {}", grouped(from), grouped(to)),
     }
 }
 
