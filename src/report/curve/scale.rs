@@ -40,7 +40,7 @@ impl Axis {
 /// A coordinate with one decimal.
 pub fn coordinate(value: f64) -> String {
     let tenths = (value * 10.0).round();
-    if !(tenths.abs() < 1e9) {
+    if tenths.is_nan() || tenths.abs() > 1e9 {
         return "0".to_owned();
     }
     let tenths = tenths as i64;
