@@ -12,11 +12,11 @@ pub mod report;
 pub mod solving;
 pub mod space;
 
-use language::diagnostic::{Diagnostic, Span};
+use language::diagnostic::{CautionGrade, Diagnostic, Span};
 use language::plan::Plan;
 use problem::{Problem, pose};
 use record::Record;
-use solving::{Obstacle, Solution, solve};
+use solving::{Obstacle, solve};
 
 pub use solving::{Progress, Silent};
 
@@ -73,6 +73,9 @@ fn record_of(
             return Ok(None);
         }
     };
+    if problem.points_left_out > 0 {
+        diagnostics.push(points_left_out(plan, &problem));
+    }
     let solution = match solve(&problem, progress) {
         Ok(solution) => solution,
         Err(obstacle) => {
@@ -85,11 +88,29 @@ fn record_of(
             "two computations of a probability disagree: {disagreement}"
         )));
     }
-    Ok(Some(filed(plan, &problem, &solution)))
+    let mut record = record::build(plan, &problem, &solution);
+    record::seal(&mut record)
+        .map_err(|fault| InternalError(format!("the record cannot be sealed: {fault}")))?;
+    Ok(Some(record))
 }
 
-fn filed(plan: &Plan, problem: &Problem, solution: &Solution) -> Record {
-    record::build(plan, problem, solution)
+fn points_left_out(plan: &Plan, problem: &Problem) -> Diagnostic {
+    let span = plan
+        .blocks
+        .iter()
+        .find(|(name, _)| name == "report")
+        .map_or(plan.start, |(_, span)| *span);
+    Diagnostic::caution(
+        CautionGrade::Information,
+        "points-left-out",
+        span,
+        format!(
+            "{} of the points asked for in `power_at` are no values that `{}` can take here; they are left out",
+            problem.points_left_out,
+            problem.family.parameter()
+        ),
+    )
+    .with_help("a finite lot has whole numbers of nonconforming units only; other points must lie in the parameter space")
 }
 
 /// What stands in the way, as a diagnostic.

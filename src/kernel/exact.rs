@@ -12,10 +12,13 @@ use num_traits::{One, Pow, Signed, ToPrimitive, Zero};
 #[derive(Clone, PartialEq, Eq, PartialOrd, Ord, Hash)]
 pub struct Exact(BigRational);
 
-/// Longest decimal text and largest decimal exponent accepted: far beyond any plan, and small enough that no input can
-/// make the arithmetic slow.
+/// Longest decimal text and largest decimal exponent read: far beyond any plan, and small enough that no input can make
+/// the arithmetic slow.
 const MOST_DIGITS: usize = 400;
 const MOST_EXPONENT: i64 = 400;
+/// Numbers other than zero lie between 10⁻⁶⁰ and 10⁶⁰ in magnitude: products and quotients of a few of them stay far
+/// from the ends of the doubles.
+const MOST_MAGNITUDE: u32 = 60;
 
 /// Why a text is not a number.
 #[derive(Clone, Debug, PartialEq, Eq)]
@@ -156,8 +159,13 @@ impl FromStr for Exact {
         } else {
             (text, 1)
         };
-        let value = decimal(number)?;
-        Ok(Self(value / BigInt::from(scale)))
+        let value = decimal(number)? / BigInt::from(scale);
+        let most = BigRational::from_integer(BigInt::from(10).pow(MOST_MAGNITUDE));
+        let magnitude = value.abs();
+        if !magnitude.is_zero() && (magnitude > most || magnitude.recip() > most) {
+            return Err(NotANumber::TooLong);
+        }
+        Ok(Self(value))
     }
 }
 
@@ -273,6 +281,7 @@ mod tests {
             assert_eq!(text.parse::<Exact>(), Err(NotANumber::Malformed), "{text}");
         }
         assert_eq!("1e999".parse::<Exact>(), Err(NotANumber::TooLong));
+        assert_eq!("1e-61".parse::<Exact>(), Err(NotANumber::TooLong));
         assert_eq!("9".repeat(500).parse::<Exact>(), Err(NotANumber::TooLong));
     }
 }

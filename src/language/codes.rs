@@ -79,6 +79,10 @@ pub const CODES: &[(&str, &str)] = &[
     ("out-of-range", "a number outside its range"),
     ("plan-too-large", "a file of more than one mebibyte"),
     (
+        "points-left-out",
+        "points of the power table that the parameter cannot take",
+    ),
+    (
         "readers-disagree",
         "a text that two YAML readers understand differently",
     ),

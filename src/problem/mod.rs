@@ -55,6 +55,8 @@ pub struct Problem {
     pub requirements: Vec<Requirement>,
     /// Points of the power table that the plan asks for.
     pub points: Vec<Exact>,
+    /// Points asked for that the parameter cannot take: left out of the report.
+    pub points_left_out: usize,
     /// Which outcome releases the lot.
     pub accept_when: AcceptWhen,
     /// Lot size of rectifying inspection.

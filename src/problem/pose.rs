@@ -44,6 +44,19 @@ pub fn pose(plan: &Plan) -> Result<Problem, Vec<Diagnostic>> {
     let (Some((amount, amount_span)), true) = (amount, problems.is_empty()) else {
         return Err(problems);
     };
+    let lattice = family.lattice();
+    let points: Vec<Exact> = plan
+        .power_at
+        .iter()
+        .filter(|point| {
+            let at = Value::Finite((*point).clone());
+            sets.space.closure().contains(&at)
+                && lattice
+                    .as_ref()
+                    .is_none_or(|lattice| lattice.index(&at).is_some())
+        })
+        .cloned()
+        .collect();
     Ok(Problem {
         shape: seen,
         stages,
@@ -64,7 +77,8 @@ pub fn pose(plan: &Plan) -> Result<Problem, Vec<Diagnostic>> {
             .map_or(test.null_subset.span, |region| region.span),
         given_region: region,
         tries: tries(test),
-        points: plan.power_at.clone(),
+        points_left_out: plan.power_at.len() - points.len(),
+        points,
         accept_when: plan.decision.accept_when.value,
         rectified_lot: test
             .rectification_lot_size

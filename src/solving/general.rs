@@ -10,7 +10,7 @@ use super::obstacle::Obstacle;
 use super::operating::Operating;
 
 /// Most outcomes the general solver orders.
-const MOST_OUTCOMES: u64 = 20_000;
+const MOST_OUTCOMES: u64 = 5_000;
 /// Outcomes less probable than this under every null and alternative point tried are left out of an endless support.
 const NEGLIGIBLE: f64 = 1e-18;
 

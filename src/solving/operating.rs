@@ -93,7 +93,12 @@ impl<'a> Operating<'a> {
         observed: &Value,
         level: &Level,
     ) -> Result<Ordering, Obstacle> {
-        judgement::compare(&self.law(observed), region, self.problem.tries, level)
+        self.judge(&self.law(observed), region, level)
+    }
+
+    /// How the rejection probability under a law compares with a level: for searches that ask about one law many times.
+    pub fn judge(&self, law: &Law, region: &Region, level: &Level) -> Result<Ordering, Obstacle> {
+        judgement::compare(law, region, self.problem.tries, level)
     }
 
     /// The level of the problem.
@@ -116,8 +121,10 @@ impl<'a> Operating<'a> {
         let (low, high) = self.outcomes();
         let last = high.unwrap_or(UNBOUNDED);
         let start = self.start(observed, low, last);
+        let law = self.law(observed);
         let found = last_true(start, low, last, |count| {
-            self.is_at_most(&Region::at_most(Some(count)), observed, level)
+            self.judge(&law, &Region::at_most(Some(count)), level)
+                .map(Ordering::is_le)
         })?;
         if found == Some(last) {
             return Err(Obstacle::NoLargestRegion);
@@ -136,9 +143,10 @@ impl<'a> Operating<'a> {
         let last = high.unwrap_or(UNBOUNDED);
         let start = self.start(observed, low, last);
         // P(statistic ≥ c) > level holds up to the count just below the one sought.
+        let law = self.law(observed);
         let too_probable = last_true(start, low, last, |count| {
-            self.is_at_most(&Region::at_least(Some(count)), observed, level)
-                .map(|fits| !fits)
+            self.judge(&law, &Region::at_least(Some(count)), level)
+                .map(Ordering::is_gt)
         })?;
         Ok(match too_probable {
             None => Some(low),

@@ -247,17 +247,8 @@ fn power_at(rule: &Rule<'_>, at: Value) -> Result<PowerPoint, Obstacle> {
 
 /// The points of the report: those of the plan that lie in the space, else a grid around all that matters.
 fn points(problem: &Problem) -> Vec<Value> {
-    let lattice = problem.family.lattice();
-    let closure = problem.space.closure();
     if !problem.points.is_empty() {
-        return problem
-            .points
-            .iter()
-            .cloned()
-            .map(Value::Finite)
-            .filter(|at| closure.contains(at))
-            .filter(|at| lattice.as_ref().is_none_or(|l| l.index(at).is_some()))
-            .collect();
+        return problem.points.iter().cloned().map(Value::Finite).collect();
     }
     let mut ends: Vec<Exact> = Vec::new();
     let mut add = |set: &LineSet| {
@@ -282,7 +273,7 @@ fn points(problem: &Problem) -> Vec<Value> {
     }
     ends.sort();
     ends.dedup();
-    default_points(&problem.space, &ends, lattice.as_ref())
+    default_points(&problem.space, &ends, problem.family.lattice().as_ref())
 }
 
 fn acceptance(rule: &Rule<'_>) -> Vec<(&'static str, f64)> {

@@ -6,18 +6,23 @@
 
 use std::cmp::Ordering;
 
+use crate::kernel::enclosure::Enclosure;
 use crate::kernel::exact::Exact;
 use crate::kernel::exact_sum;
+use crate::kernel::law::Law;
+use crate::kernel::ratio_sum;
 use crate::kernel::region::Region;
 use crate::space::Value;
 
 use super::extremum::{Goal, extremum};
-use super::judgement::Level;
+use super::judgement::{Level, over_tries};
 use super::obstacle::Obstacle;
 use super::operating::{Operating, last_true};
 
 /// Most inner ranges compared before the search gives up.
 const MOST_CANDIDATES: u64 = 200_000;
+/// Largest sample for which inner ranges are compared.
+const MOST_UNITS: u64 = 20_000_000;
 /// Doubles that differ by less than this part of them are compared exactly.
 const CLOSE: f64 = 1e-9;
 
@@ -32,13 +37,15 @@ struct Tails {
 
 struct TwoTails<'a, 'b> {
     operating: &'a Operating<'b>,
-    /// Null end where the lower tail is most probable.
-    low: &'a Value,
-    /// Null end where the upper tail is most probable.
-    high: &'a Value,
+    /// The law at the null end where the lower tail is most probable.
+    low: Law,
+    /// The law at the null end where the upper tail is most probable.
+    high: Law,
     alpha: &'a Level,
     first: u64,
     beyond: u64,
+    /// About where the statistic lies at the upper null end.
+    centre: f64,
 }
 
 /// Among the two-tailed regions of size at most α that no larger one contains: the one whose tail sizes, each at its own
@@ -52,11 +59,15 @@ pub fn joint_tails(
     let (first, last) = operating.outcomes();
     let search = TwoTails {
         operating,
-        low,
-        high,
+        low: operating.law(low),
+        high: operating.law(high),
         alpha,
         first,
         beyond: last.map_or(1 << 40, |last| last + 1),
+        centre: operating
+            .problem
+            .family
+            .expected_count(high, &operating.amount),
     };
     let longest = operating
         .largest_lower_tail(low, alpha)?
@@ -119,20 +130,15 @@ impl TwoTails<'_, '_> {
 
     fn fits(&self, tails: Tails) -> Result<bool, Obstacle> {
         let region = self.region(tails);
-        Ok(self.operating.is_at_most(&region, self.low, self.alpha)?
-            && self.operating.is_at_most(&region, self.high, self.alpha)?)
+        let judge = |law| self.operating.judge(law, &region, self.alpha);
+        Ok(judge(&self.low)?.is_le() && judge(&self.high)?.is_le())
     }
 
     /// The lower tail with the largest upper tail that fits.
     fn completed(&self, lower: u64) -> Result<Tails, Obstacle> {
         let from = self.first + lower;
-        let start = self
-            .operating
-            .problem
-            .family
-            .expected_count(self.high, &self.operating.amount);
-        let start = if start.is_finite() {
-            start as u64
+        let start = if self.centre.is_finite() {
+            self.centre as u64
         } else {
             from
         };
@@ -150,21 +156,14 @@ impl TwoTails<'_, '_> {
     }
 
     fn difference(&self, tails: Tails) -> f64 {
-        let lower = self.operating.single(&self.lower(tails), self.low).middle();
-        let upper = self
-            .operating
-            .single(&self.upper(tails), self.high)
-            .middle();
+        let lower = ratio_sum::probability(&self.low, &self.lower(tails)).middle();
+        let upper = ratio_sum::probability(&self.high, &self.upper(tails)).middle();
         lower - upper
     }
 
-    fn exact(&self, region: &Region, at: &Value) -> Option<Exact> {
-        exact_sum::probability(&self.operating.law(at), region)
-    }
-
     fn exact_imbalance(&self, tails: Tails) -> Option<Exact> {
-        let difference = &self.exact(&self.lower(tails), self.low)?
-            - &self.exact(&self.upper(tails), self.high)?;
+        let difference = &exact_sum::probability(&self.low, &self.lower(tails))?
+            - &exact_sum::probability(&self.high, &self.upper(tails))?;
         Some(if difference.is_negative() {
             -&difference
         } else {
@@ -175,15 +174,15 @@ impl TwoTails<'_, '_> {
     fn exact_size(&self, tails: Tails) -> Option<Exact> {
         let region = self.region(tails);
         Some(
-            self.exact(&region, self.low)?
-                .max(self.exact(&region, self.high)?),
+            exact_sum::probability(&self.low, &region)?
+                .max(exact_sum::probability(&self.high, &region)?),
         )
     }
 
     fn size(&self, tails: Tails) -> f64 {
         let region = self.region(tails);
-        let at = |end| self.operating.single(&region, end).middle();
-        at(self.low).max(at(self.high))
+        let at = |law| ratio_sum::probability(law, &region).middle();
+        at(&self.low).max(at(&self.high))
     }
 
     /// Whether the first is better than the second.
@@ -232,12 +231,15 @@ struct Inner {
 
 struct InnerSearch<'a, 'b> {
     operating: &'a Operating<'b>,
-    low: &'a Value,
-    high: &'a Value,
+    /// Laws at the null points next to the alternative.
+    low: Law,
+    high: Law,
     alpha: &'a Level,
+    /// The middle of the alternative, and the law there.
     middle: Value,
-    /// Ends of the requirements' sets as observed, and what is required there.
-    wanted: Vec<(Value, f64)>,
+    law_in_middle: Law,
+    /// Laws at the ends of the requirements' sets as observed, and what is required there.
+    wanted: Vec<(Law, f64)>,
     first: u64,
     last: u64,
 }
@@ -252,6 +254,11 @@ pub fn inner_region(
 ) -> Result<Region, Obstacle> {
     let problem = operating.problem;
     let (first, last) = operating.outcomes();
+    if last.is_some_and(|last| last > MOST_UNITS) {
+        return Err(Obstacle::NotProved {
+            question: format!("the best inner range for more than {MOST_UNITS} units"),
+        });
+    }
     let wanted = problem
         .requirements
         .iter()
@@ -262,16 +269,18 @@ pub fn inner_region(
                 .pieces()
                 .iter()
                 .flat_map(|piece| [piece.low().at.clone(), piece.high().at.clone()])
-                .map(|at| (at, at_least))
+                .map(|at| (operating.law(&at), at_least))
                 .collect::<Vec<_>>()
         })
         .collect();
+    let middle = middle_of_alternative(operating);
     let search = InnerSearch {
         operating,
-        low,
-        high,
+        low: operating.law(low),
+        high: operating.law(high),
         alpha,
-        middle: middle_of_alternative(operating),
+        law_in_middle: operating.law(&middle),
+        middle,
         wanted,
         first,
         last: last.unwrap_or(1 << 40),
@@ -407,10 +416,17 @@ impl InnerSearch<'_, '_> {
         Ok(hopeless.map_or(self.first, |from| (from + 1).min(centre)))
     }
 
+    fn rejection(&self, law: &Law, region: &Region) -> Enclosure {
+        over_tries(
+            ratio_sum::probability(law, region),
+            self.operating.problem.tries,
+        )
+    }
+
     fn fits(&self, from: u64, to: u64) -> Result<bool, Obstacle> {
         let region = Region::between(from, to);
-        Ok(self.operating.is_at_most(&region, self.low, self.alpha)?
-            && self.operating.is_at_most(&region, self.high, self.alpha)?)
+        let judge = |law| self.operating.judge(law, &region, self.alpha);
+        Ok(judge(&self.low)?.is_le() && judge(&self.high)?.is_le())
     }
 
     /// The farthest end of a range that starts here and fits.
@@ -420,8 +436,8 @@ impl InnerSearch<'_, '_> {
 
     fn rated(&self, from: u64, to: u64) -> Inner {
         let region = Region::between(from, to);
-        let power = |at: &Value| self.operating.rejection(&region, at).middle();
-        let middle = power(&self.middle);
+        let power = |law: &Law| self.rejection(law, &region).middle();
+        let middle = power(&self.law_in_middle);
         let margin = self
             .wanted
             .iter()
@@ -447,21 +463,21 @@ impl InnerSearch<'_, '_> {
     }
 
     fn bound(&self, region: &Region) -> f64 {
-        let power = |at: &Value| self.operating.rejection(region, at).upper();
+        let power = |law: &Law| self.rejection(law, region).upper();
         self.wanted
             .iter()
             .map(|(at, at_least)| power(at) - at_least)
             .reduce(f64::min)
-            .unwrap_or_else(|| power(&self.middle))
+            .unwrap_or_else(|| power(&self.law_in_middle))
     }
 
     /// Whether the size over the whole null is at most α: at once where the probability in the middle exceeds that at
     /// both ends, because it then peaks between them.
     fn peaks_inside(&self, candidate: &Inner) -> Result<bool, Obstacle> {
         let region = Region::between(candidate.from, candidate.to);
-        let at = |end: &Value| self.operating.rejection(&region, end).upper();
-        let middle = self.operating.rejection(&region, &self.middle).lower();
-        if middle >= at(self.low).max(at(self.high)) {
+        let at = |law: &Law| self.rejection(law, &region).upper();
+        let middle = self.rejection(&self.law_in_middle, &region).lower();
+        if middle >= at(&self.low).max(at(&self.high)) {
             return Ok(true);
         }
         let problem = self.operating.problem;
