@@ -116,11 +116,14 @@ fn space(test: &Test, family: &dyn Family, problems: &mut Vec<Diagnostic>) -> Op
     }
     let space = on_lattice(family, &declared.intersection(&domain));
     if space.is_empty() {
-        problems.push(Diagnostic::error(
-            "empty-space",
-            test.parameter_space.span,
-            "the parameter space holds no value at all",
-        ));
+        problems.push(
+            Diagnostic::error(
+                "empty-space",
+                test.parameter_space.span,
+                "the parameter space holds no value at all",
+            )
+            .with_help("check its bounds, and that parts joined by `and` overlap"),
+        );
         return None;
     }
     Some(space)

@@ -307,13 +307,16 @@ fn rectification(
     if let Some(SampleSize::Given(sample)) = sample
         && *sample > lot.value
     {
-        problems.push(Diagnostic::error(
-            "sample-larger-than-lot",
-            lot.span,
-            format!(
-                "a sample of {sample} cannot be drawn from a lot of {}",
-                lot.value
-            ),
-        ));
+        problems.push(
+            Diagnostic::error(
+                "sample-larger-than-lot",
+                lot.span,
+                format!(
+                    "a sample of {sample} cannot be drawn from a lot of {}",
+                    lot.value
+                ),
+            )
+            .with_help("correct the sample size or the lot size"),
+        );
     }
 }

@@ -177,14 +177,17 @@ fn declared(
     }
     if cumulative > family.most() {
         let span = requests.last()?.size.span;
-        problems.push(Diagnostic::error(
-            "sample-larger-than-lot",
-            span,
-            format!(
-                "all stages together take {cumulative} of a lot of {}",
-                family.most()
-            ),
-        ));
+        problems.push(
+            Diagnostic::error(
+                "sample-larger-than-lot",
+                span,
+                format!(
+                    "all stages together take {cumulative} of a lot of {}",
+                    family.most()
+                ),
+            )
+            .with_help("take fewer units in all stages together"),
+        );
         return None;
     }
     Some(stages)
