@@ -1,12 +1,11 @@
 //! The supremum or infimum of the rejection probability over a set: by a theorem where one says where it is, else by
 //! branch and bound with enclosures.
 
-use std::collections::BinaryHeap;
-
 use crate::kernel::enclosure::Enclosure;
 use crate::kernel::region::Region;
 use crate::space::{Interval, LineSet, Value};
 
+use super::branch_and_bound::supremum;
 use super::judgement::over_tries;
 use super::operating::Operating;
 use super::region::{Form, form_of};
@@ -42,11 +41,6 @@ const BY_PEAK_OUTSIDE: &str = "total positivity: the probability of an inner ran
 /// The argument for everything else.
 const BY_BRANCH_AND_BOUND: &str =
     "branch and bound with enclosures of the probability and of its slope over the whole set";
-
-/// Width at which branch and bound stops, relative to the value.
-const PRECISE: f64 = 1e-12;
-/// Most boxes looked at before the enclosure reached so far is returned, wide but true.
-const MOST_BOXES: usize = 40_000;
 
 /// The extremum of the rejection probability of a region over a non-empty set of observed values (its closure).
 pub fn extremum(operating: &Operating<'_>, region: &Region, set: &LineSet, goal: Goal) -> Extremum {
@@ -133,10 +127,10 @@ fn over_piece(
         (Form::Inner, _) | (Form::TwoTails, _) => {
             match end_towards_peak(operating, region, form, piece) {
                 Some(lower) => at_end(lower, BY_PEAK_OUTSIDE),
-                None => branch_and_bound(operating, region, piece, goal),
+                None => by_branch_and_bound(operating, region, piece, goal),
             }
         }
-        (Form::Scattered, _) => branch_and_bound(operating, region, piece, goal),
+        (Form::Scattered, _) => by_branch_and_bound(operating, region, piece, goal),
     }
 }
 
@@ -173,255 +167,24 @@ fn end_towards_peak(
     (there > here).then_some(lower)
 }
 
-/// A stretch of the parameter with an upper bound on the probability over it.
-struct Stretch {
-    bound: f64,
-    low: Value,
-    high: Value,
-    at_low: Enclosure,
-    at_high: Enclosure,
-}
-
-impl PartialEq for Stretch {
-    fn eq(&self, other: &Self) -> bool {
-        self.cmp(other).is_eq()
-    }
-}
-impl Eq for Stretch {}
-impl PartialOrd for Stretch {
-    fn partial_cmp(&self, other: &Self) -> Option<std::cmp::Ordering> {
-        Some(self.cmp(other))
-    }
-}
-impl Ord for Stretch {
-    fn cmp(&self, other: &Self) -> std::cmp::Ordering {
-        self.bound
-            .total_cmp(&other.bound)
-            .then_with(|| other.low.cmp(&self.low))
-    }
-}
-
 /// The infimum of a probability is one less the supremum of the complement's.
-fn branch_and_bound(
+fn by_branch_and_bound(
     operating: &Operating<'_>,
     region: &Region,
     piece: &Interval,
     goal: Goal,
 ) -> Extremum {
-    match goal {
+    let (value, at, at_lower_end) = match goal {
         Goal::Supremum => supremum(operating, region, piece),
         Goal::Infimum => {
-            let found = supremum(operating, &region.complement(), piece);
-            Extremum {
-                value: found.value.complement(),
-                ..found
-            }
+            let (value, at, at_lower_end) = supremum(operating, &region.complement(), piece);
+            (value.complement(), at, at_lower_end)
         }
-    }
-}
-
-fn supremum(operating: &Operating<'_>, region: &Region, piece: &Interval) -> Extremum {
-    let (low, high) = (piece.low().at.clone(), piece.high().at.clone());
-    let (at_low, at_high) = (
-        operating.single(region, &low),
-        operating.single(region, &high),
-    );
-    let mut lower = at_low.lower().max(at_high.lower());
-    let mut place = if at_low.lower() >= at_high.lower() {
-        (low.clone(), true)
-    } else {
-        (high.clone(), false)
     };
-    let mut stretches = BinaryHeap::new();
-    stretches.push(bounded(operating, region, low, high, at_low, at_high));
-    let mut settled = lower;
-    for _ in 0..MOST_BOXES {
-        let Some(worst) = stretches.pop() else {
-            break;
-        };
-        if worst.bound <= lower * (1.0 + PRECISE) {
-            settled = settled.max(worst.bound);
-            break;
-        }
-        let Some(middle) = split_point(operating, &worst.low, &worst.high) else {
-            // Nothing lies between the ends: their own enclosures are all there is.
-            settled = settled.max(worst.at_low.upper()).max(worst.at_high.upper());
-            continue;
-        };
-        let at_middle = operating.single(region, &middle);
-        if at_middle.lower() > lower {
-            lower = at_middle.lower();
-            place = (middle.clone(), true);
-        }
-        let left = bounded(
-            operating,
-            region,
-            worst.low,
-            middle.clone(),
-            worst.at_low,
-            at_middle,
-        );
-        let right = bounded(
-            operating,
-            region,
-            middle,
-            worst.high,
-            at_middle,
-            worst.at_high,
-        );
-        stretches.push(left);
-        stretches.push(right);
-    }
-    let upper = stretches
-        .peek()
-        .map_or(settled, |worst| worst.bound.max(settled))
-        .clamp(lower, 1.0);
     Extremum {
-        value: Enclosure::new(lower, upper).unwrap_or(Enclosure::UNKNOWN),
-        at: place.0,
-        at_lower_end: place.1,
+        value,
+        at,
+        at_lower_end,
         how: BY_BRANCH_AND_BOUND,
     }
-}
-
-/// A point strictly between two others; on lattices a lattice point, towards infinity the double.
-fn split_point(operating: &Operating<'_>, low: &Value, high: &Value) -> Option<Value> {
-    if let Some(lattice) = operating.problem.family.lattice() {
-        let (first, last) = (lattice.index(low)?, lattice.index(high)?);
-        return (last - first > 1).then(|| lattice.value(first + (last - first) / 2));
-    }
-    match (low, high) {
-        (Value::Finite(a), Value::Finite(b)) => {
-            let middle = a.midpoint(b);
-            // Boxes narrower than doubles can tell apart are not split further.
-            let apart = (b.to_f64() - a.to_f64()) > 4.0 * f64::EPSILON * b.to_f64().abs();
-            apart.then_some(Value::Finite(middle))
-        }
-        (Value::Finite(a), Value::Infinity) => {
-            let one = crate::kernel::exact::Exact::one();
-            Some(Value::Finite(&(a + a) + &one))
-        }
-        _ => None,
-    }
-}
-
-fn bounded(
-    operating: &Operating<'_>,
-    region: &Region,
-    low: Value,
-    high: Value,
-    at_low: Enclosure,
-    at_high: Enclosure,
-) -> Stretch {
-    let adjacent = split_point(operating, &low, &high).is_none();
-    let bound = if adjacent && operating.problem.family.lattice().is_some() {
-        at_low.upper().max(at_high.upper())
-    } else {
-        let by_tails = bound_by_tails(operating, region, &low, &high);
-        bound_by_slope(operating, region, (&low, at_low), (&high, at_high))
-            .map_or(by_tails, |by_slope| by_slope.min(by_tails))
-    };
-    Stretch {
-        bound,
-        low,
-        high,
-        at_low,
-        at_high,
-    }
-}
-
-/// Every range's probability is a difference of two lower tails, each monotone: the largest first less the smallest
-/// second bounds it over the stretch.
-fn bound_by_tails(operating: &Operating<'_>, region: &Region, low: &Value, high: &Value) -> f64 {
-    let (most_at, least_at) = if operating.is_rising() {
-        (low, high)
-    } else {
-        (high, low)
-    };
-    let bound: f64 = region
-        .ranges()
-        .iter()
-        .map(|range| {
-            let upper = match range.to {
-                Some(to) => operating
-                    .single(&Region::at_most(Some(to)), most_at)
-                    .upper(),
-                None => 1.0,
-            };
-            let lower = match range.from.checked_sub(1) {
-                Some(before) => operating
-                    .single(&Region::at_most(Some(before)), least_at)
-                    .lower(),
-                None => 0.0,
-            };
-            (upper - lower).next_up()
-        })
-        .sum();
-    (bound * (1.0 + 1e-14)).min(1.0)
-}
-
-/// With the slope between −Q and P over the stretch, the probability lies below both lines γ(a) + P·(θ−a) and
-/// γ(b) + Q·(b−θ); they cross at the bound.
-fn bound_by_slope(
-    operating: &Operating<'_>,
-    region: &Region,
-    (low, at_low): (&Value, Enclosure),
-    (high, at_high): (&Value, Enclosure),
-) -> Option<f64> {
-    let (least, most) = slope_over(operating, region, low, high)?;
-    let (a, b) = (at_low.upper(), at_high.upper());
-    if most <= 0.0 {
-        return Some(a);
-    }
-    if least >= 0.0 {
-        return Some(b);
-    }
-    let (p, q) = (most, -least);
-    let width = (high.finite()? - low.finite()?).to_f64().next_up();
-    let crossing = (a * q + b * p + width * p * q) / (p + q);
-    Some((crossing * (1.0 + 1e-14)).max(a).max(b))
-}
-
-/// Smallest and largest slope of the region's probability over a bounded stretch.
-fn slope_over(
-    operating: &Operating<'_>,
-    region: &Region,
-    low: &Value,
-    high: &Value,
-) -> Option<(f64, f64)> {
-    high.finite()?;
-    let family = &operating.problem.family;
-    let mut least = 0.0;
-    let mut most = 0.0;
-    let mut add = |count: u64, sign: f64| -> Option<()> {
-        let at_low = family.slope(count, low, &operating.amount)?;
-        let at_high = family.slope(count, high, &operating.amount)?;
-        let steepest = family.steepest(count, &operating.amount);
-        let bottom = at_low.lower().min(at_high.lower());
-        let top = if *low < steepest && steepest < *high {
-            family.slope(count, &steepest, &operating.amount)?.upper()
-        } else {
-            at_low.upper().max(at_high.upper())
-        };
-        if sign > 0.0 {
-            least += bottom;
-            most += top;
-        } else {
-            least -= top;
-            most -= bottom;
-        }
-        Some(())
-    };
-    // A lower tail falls where the statistic grows with the parameter.
-    let lower_tail = if operating.is_rising() { -1.0 } else { 1.0 };
-    for range in region.ranges() {
-        if let Some(to) = range.to {
-            add(to, lower_tail)?;
-        }
-        if let Some(before) = range.from.checked_sub(1) {
-            add(before, -lower_tail)?;
-        }
-    }
-    let slack = 1e-12 * (f64::abs(least) + f64::abs(most));
-    Some((least - slack, most + slack))
 }

@@ -1,10 +1,13 @@
 //! From problem to solution: region, size, power, envelope, sample size, each with its proof.
 
 mod acceptance;
+mod branch_and_bound;
 mod double_entry;
 mod envelope;
 mod extremum;
 mod general;
+mod inner_range;
+mod joint_tails;
 mod judgement;
 mod obstacle;
 mod operating;
@@ -15,7 +18,7 @@ mod sample_size;
 mod solution;
 mod staged;
 mod tail_bound;
-mod two_sided;
+mod threshold;
 
 pub use double_entry::DoubleEntry;
 pub use envelope::envelope;

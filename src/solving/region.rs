@@ -4,10 +4,12 @@ use crate::kernel::region::Region;
 use crate::language::plan::Tails;
 use crate::problem::Shape;
 
+use super::general;
+use super::inner_range::inner_region;
+use super::joint_tails::joint_tails;
 use super::judgement::Level;
 use super::obstacle::Obstacle;
 use super::operating::Operating;
-use super::{general, two_sided};
 
 /// The form of a region within the possible outcomes.
 #[derive(Clone, Copy, Debug, PartialEq, Eq)]
@@ -52,10 +54,10 @@ pub fn derive(operating: &Operating<'_>) -> Result<Region, Obstacle> {
         Shape::Below { end } => Region::at_most(operating.largest_lower_tail(end, &alpha)?),
         Shape::Above { end } => Region::at_least(operating.smallest_upper_tail(end, &alpha)?),
         Shape::Amid { low, high } if operating.problem.tails == Tails::Joint => {
-            two_sided::joint_tails(operating, low, high, &alpha)?
+            joint_tails(operating, low, high, &alpha)?
         }
         Shape::Amid { low, high } => equal_tails(operating, low, high)?,
-        Shape::Around { low, high } => two_sided::inner_region(operating, low, high, &alpha)?,
+        Shape::Around { low, high } => inner_region(operating, low, high, &alpha)?,
         Shape::General => general::region(operating, &alpha)?,
     };
     let (low, high) = operating.outcomes();
