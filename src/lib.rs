@@ -9,6 +9,7 @@ pub mod language;
 pub mod problem;
 pub mod record;
 pub mod report;
+pub mod rule;
 pub mod solving;
 pub mod space;
 
@@ -16,7 +17,8 @@ use language::diagnostic::{CautionGrade, Diagnostic, Span};
 use language::plan::Plan;
 use problem::{Problem, pose};
 use record::Record;
-use solving::{Obstacle, solve};
+use rule::Facts;
+use solving::{Obstacle, Solution, solve};
 
 pub use solving::{Progress, Silent};
 
@@ -66,6 +68,32 @@ fn record_of(
     diagnostics: &mut Vec<Diagnostic>,
     progress: &dyn Progress,
 ) -> Result<Option<Record>, InternalError> {
+    let solved = solved(plan, diagnostics, progress)?;
+    let facts = solved
+        .as_ref()
+        .map(|(problem, solution)| Facts::of(plan, problem, solution));
+    diagnostics.extend(rule::apply(plan, facts.as_ref()));
+    diagnostics.sort_by_key(|found| found.span);
+    let Some((problem, solution)) = solved else {
+        return Ok(None);
+    };
+    if diagnostics.iter().any(Diagnostic::is_error) {
+        return Ok(None);
+    }
+    let mut record = record::build(plan, &problem, &solution);
+    record.cautions = record::cautions(diagnostics);
+    record.waivers = record::waivers(&rule::waived(plan, facts.as_ref()));
+    record::seal(&mut record)
+        .map_err(|fault| InternalError(format!("the record cannot be sealed: {fault}")))?;
+    Ok(Some(record))
+}
+
+/// The problem and its solution; without them, the diagnostics say why.
+fn solved(
+    plan: &Plan,
+    diagnostics: &mut Vec<Diagnostic>,
+    progress: &dyn Progress,
+) -> Result<Option<(Problem, Solution)>, InternalError> {
     let problem = match pose(plan) {
         Ok(problem) => problem,
         Err(found) => {
@@ -88,10 +116,7 @@ fn record_of(
             "two computations of a probability disagree: {disagreement}"
         )));
     }
-    let mut record = record::build(plan, &problem, &solution);
-    record::seal(&mut record)
-        .map_err(|fault| InternalError(format!("the record cannot be sealed: {fault}")))?;
-    Ok(Some(record))
+    Ok(Some((problem, solution)))
 }
 
 fn points_left_out(plan: &Plan, problem: &Problem) -> Diagnostic {

@@ -7,4 +7,5 @@ pub mod exact_sum;
 pub mod law;
 pub mod ratio_sum;
 pub mod region;
+pub mod rounding;
 pub mod second_route;

@@ -122,7 +122,9 @@ pub const CODES: &[(&str, &str)] = &[
     ("unknown-family", "a family that does not exist"),
     ("unknown-key", "a key that does not exist"),
     ("unknown-parameter", "a name that the family does not know"),
+    ("unknown-rule", "a waiver of a rule that does not exist"),
     ("unknown-word", "a word that is not among those allowed"),
+    ("waiver-without-reason", "a rule waived without a reason"),
     (
         "where-outside-space",
         "a requirement that reaches out of the parameter space",

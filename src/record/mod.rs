@@ -3,6 +3,7 @@
 mod build;
 mod canonical;
 mod content;
+mod findings;
 #[cfg(test)]
 pub(crate) mod fixture;
 mod seal;
@@ -10,4 +11,5 @@ mod seal;
 pub use build::{LANGUAGE, build, hexadecimal};
 pub use canonical::{Unwritable, canonical, pretty};
 pub use content::*;
+pub use findings::{cautions, waivers};
 pub use seal::{checksum_line, record_json, seal, sha256_hex};

@@ -5,7 +5,6 @@ mod escape;
 mod html;
 mod page;
 mod power_table;
-pub mod round;
 mod words;
 
 use words::claim;
@@ -15,6 +14,7 @@ use minijinja::{Environment, UndefinedBehavior, Value};
 
 use crate::record::{Record, Unwritable, sha256_hex};
 
+pub use crate::kernel::rounding as round;
 pub use curve::{Layout, svg};
 pub use html::html;
 

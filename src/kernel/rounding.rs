@@ -31,7 +31,7 @@ fn negligible() -> Exact {
 ///
 /// ```
 /// use assize::kernel::exact::Exact;
-/// use assize::report::round::{Toward, fixed};
+/// use assize::kernel::rounding::{Toward, fixed};
 /// let third = Exact::fraction(1, 3).unwrap();
 /// assert_eq!(fixed(&third, 3, Toward::Up), "0.334");
 /// assert_eq!(fixed(&third, 3, Toward::Down), "0.333");
