@@ -194,7 +194,10 @@ fn smaller_that_does(problem: &Problem, solution: &Solution) -> Option<Exact> {
 }
 
 fn region_keeps_level_from(problem: &Problem, solution: &Solution) -> Option<Exact> {
-    if problem.given_region.is_none() || solution.within_level {
+    let region = problem.given_region.as_ref()?;
+    let counts_units = problem.family.registration().amount_kind == AmountKind::Units;
+    // More units only make a region of large counts likelier.
+    if solution.within_level || region.is_unbounded() || !counts_units {
         return None;
     }
     let mut level_only = neighbour(problem);
