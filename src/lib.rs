@@ -143,30 +143,56 @@ fn in_words(obstacle: &Obstacle, problem: &Problem) -> Diagnostic {
     let at =
         |code: &'static str, span: Span, message: String| Diagnostic::error(code, span, message);
     match obstacle {
-        Obstacle::LevelUnreachable { smallest, needed } => at(
-            "level-unreachable",
-            problem.amount_span,
-            format!(
-                "no region that rejects anything has a size of at most {}: the smallest is {smallest:.6} here",
-                problem.alpha
-            ),
+        Obstacle::LevelUnreachable {
+            rule,
+            smallest,
+            halved,
+            needed,
+        } => {
+            let held = if *halved {
+                format!("each tail to half of {}", problem.alpha)
+            } else {
+                format!("the size to {}", problem.alpha)
+            };
+            let help = match needed {
+                Some(needed) => format!("the level can be kept from {needed} on"),
+                None => "raise alpha, enlarge the sample, or shrink the null subset".to_owned(),
+            };
+            at(
+                "level-unreachable",
+                problem.amount_span,
+                format!(
+                    "no region that rejects anything holds {held}: the nearest, {rule}, has size {smallest:.6}"
+                ),
+            )
+            .with_help(if *halved {
+                format!("{help}; `tails: joint` shares the level freely")
+            } else {
+                help
+            })
+        }
+        Obstacle::ImpossibleRegion => at(
+            "empty-critical-region",
+            problem.region_span,
+            "no count of this critical region can occur at this sample size".to_owned(),
         )
-        .with_help(match needed {
-            Some(needed) => format!("the level can be reached from {needed} on"),
-            None => "raise alpha, enlarge the sample, or shrink the null subset".to_owned(),
-        }),
+        .with_help("state counts from zero to the sample size"),
         Obstacle::SearchExhausted { limit, failing } => at(
             "no-sample-size",
             problem.amount_span,
             format!("no amount up to {limit} will do; {failing}"),
         )
-        .with_help("widen the gap between the null subset and the requirements, or ask for less power"),
+        .with_help(
+            "widen the gap between the null subset and the requirements, or ask for less power",
+        ),
         Obstacle::NotProved { question } => at(
             "not-proved",
             problem.region_span,
             format!("a question is left open: {question}"),
         )
-        .with_help("change the level or the requirement in its last digit, or use a smaller sample"),
+        .with_help(
+            "change the level or the requirement in its last digit, or use a smaller sample",
+        ),
         Obstacle::NoLargestRegion => at(
             "no-largest-region",
             problem.region_span,
@@ -178,7 +204,9 @@ fn in_words(obstacle: &Obstacle, problem: &Problem) -> Diagnostic {
             problem.region_span,
             "outgoing quality is derived only where lots are released at small counts".to_owned(),
         )
-        .with_help("leave `rectification` out, or state the null so that small counts release the lot"),
+        .with_help(
+            "leave `rectification` out, or state the null so that small counts release the lot",
+        ),
         Obstacle::Stopped => at(
             "stopped",
             problem.amount_span,

@@ -7,11 +7,17 @@ use crate::kernel::exact::Exact;
 pub enum Obstacle {
     /// No non-empty region has a size of at most the level at this amount.
     LevelUnreachable {
-        /// The smallest size that a non-empty region has here.
+        /// The region that comes nearest.
+        rule: String,
+        /// Its size, the smallest that a non-empty region has here.
         smallest: f64,
+        /// Whether each of two tails was held to half the level.
+        halved: bool,
         /// The smallest amount at which the level can be reached, if one was found.
         needed: Option<Exact>,
     },
+    /// The region that the plan gives holds no outcome that can occur at this amount.
+    ImpossibleRegion,
     /// No amount up to the limit meets level and requirements.
     SearchExhausted {
         /// The largest amount tried.

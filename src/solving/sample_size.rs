@@ -30,8 +30,7 @@ pub struct Search {
     pub one_less: String,
 }
 
-const BY_CHERNOFF: &str =
-    "every amount up to a bound of Chernoff's was checked; beyond it the bound proves it";
+const BY_CHERNOFF: &str = "every amount up to a bound of Chernoff's was checked; beyond it the bound, computed with libm's logarithm and enlarged by a thousandth, proves it";
 const BY_WHOLE_LOT: &str = "every sample size up to the whole lot was checked";
 const BY_MONOTONICITY: &str = "the size of the region falls as the amount grows";
 const BY_TRIAL: &str = "every amount up to the stated one was checked";

@@ -136,7 +136,10 @@ pub fn solve(problem: &Problem, progress: &dyn Progress) -> Result<Solution, Obs
             None => derive(&operating)?,
         };
         if region.is_empty() {
-            return Err(unreachable_level(&operating, progress));
+            return Err(match problem.given_region {
+                Some(_) => Obstacle::ImpossibleRegion,
+                None => unreachable_level(&operating, progress),
+            });
         }
         Rule::single(operating, region)
     } else {
@@ -340,32 +343,34 @@ fn unreachable_level(operating: &Operating<'_>, progress: &dyn Progress) -> Obst
     let problem = operating.problem;
     let null = problem.observation.image(&problem.null);
     let last = high.unwrap_or(low + 1_000).min(low + 5_000);
-    let smallest_size = match &problem.shape {
+    let candidates = match &problem.shape {
         Shape::Below { .. } => low..=low,
         Shape::Above { .. } => last..=last,
         _ => low..=last,
-    }
-    .map(|count| {
+    };
+    let size_of = |count: u64| {
         let outcome = Region::between(count, count);
         null.pieces()
             .iter()
             .flat_map(|piece| [&piece.low().at, &piece.high().at])
             .map(|end| operating.rejection(&outcome, end).upper())
             .fold(0.0, f64::max)
-    })
-    .fold(1.0, f64::min);
+    };
+    let (count, smallest_size) = candidates
+        .map(|count| (count, size_of(count)))
+        .reduce(|best, other| if other.1 < best.1 { other } else { best })
+        .unwrap_or((low, 1.0));
     let mut anything = problem.clone();
     anything.requirements.clear();
-    let needed = match &problem.amount {
-        AmountRequest::Given(_) if problem.given_region.is_none() => {
-            smallest(&anything, &Exact::one(), progress)
-                .ok()
-                .map(|search| search.smallest)
-        }
-        _ => None,
-    };
+    let needed = matches!(problem.amount, AmountRequest::Given(_))
+        .then(|| smallest(&anything, &Exact::one(), progress).ok())
+        .flatten()
+        .map(|search| search.smallest);
+    let statistic = problem.family.registration().statistic;
     Obstacle::LevelUnreachable {
+        rule: Region::between(count, count).in_words(statistic, (low, high)),
         smallest: smallest_size,
+        halved: matches!(problem.shape, Shape::Amid { .. }) && problem.tails == Tails::Equal,
         needed,
     }
 }
