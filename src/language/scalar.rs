@@ -69,8 +69,12 @@ pub struct Grid {
 #[derive(Clone, Debug, Serialize, JsonSchema)]
 #[serde(untagged)]
 pub enum Rate {
-    /// One value. serde hands over a number instead of its text here, so the reader takes the text from the located tree.
+    /// One value.
     Single(Number),
+    /// One value for which serde hands over a number instead of its text, because a range could stand there. Its exact
+    /// text is in the located tree.
+    #[schemars(skip)]
+    Double(f64),
     /// A range.
     Range(Range),
 }
@@ -106,23 +110,23 @@ impl<'de> Visitor<'de> for RateVisitor {
     }
 
     fn visit_f64<E: de::Error>(self, value: f64) -> Result<Rate, E> {
-        Ok(Rate::Single(Number(value.to_string())))
+        Ok(Rate::Double(value))
     }
 
     fn visit_u64<E: de::Error>(self, value: u64) -> Result<Rate, E> {
-        Ok(Rate::Single(Number(value.to_string())))
+        Ok(Rate::Double(value as f64))
     }
 
     fn visit_i64<E: de::Error>(self, value: i64) -> Result<Rate, E> {
-        Ok(Rate::Single(Number(value.to_string())))
+        Ok(Rate::Double(value as f64))
     }
 
     fn visit_u128<E: de::Error>(self, value: u128) -> Result<Rate, E> {
-        Ok(Rate::Single(Number(value.to_string())))
+        Ok(Rate::Double(value as f64))
     }
 
     fn visit_i128<E: de::Error>(self, value: i128) -> Result<Rate, E> {
-        Ok(Rate::Single(Number(value.to_string())))
+        Ok(Rate::Double(value as f64))
     }
 
     fn visit_bool<E: de::Error>(self, value: bool) -> Result<Rate, E> {

@@ -44,8 +44,10 @@ fn disagreement(span: Span, what: &str) -> Diagnostic {
 
 fn first_difference(node: &Node, second: &Value) -> Option<Span> {
     match (&node.kind, second) {
-        (Kind::Scalar { text, .. }, Value::String(other)) => {
-            (!same_text(text, other)).then_some(node.span)
+        (Kind::Scalar { text, .. }, Value::String(other)) => (text != other).then_some(node.span),
+        (Kind::Scalar { text, .. }, Value::Number(other)) => {
+            let same = text.parse().ok() == other.as_f64();
+            (!same).then_some(node.span)
         }
         (Kind::Sequence(items), Value::Array(others)) if items.len() == others.len() => items
             .iter()
@@ -67,7 +69,36 @@ fn first_difference(node: &Node, second: &Value) -> Option<Span> {
     }
 }
 
-/// Where a value may be a number or a range, serde hands over a number instead of its text.
-fn same_text(text: &str, other: &str) -> bool {
-    text == other || matches!((text.parse::<f64>(), other.parse::<f64>()), (Ok(a), Ok(b)) if a == b)
+#[cfg(test)]
+mod tests {
+    use super::*;
+    use crate::language::locate::locate;
+    use crate::language::source::Source;
+
+    const PLAN: &str = include_str!("../../tests/plans/good-every-key.yaml");
+
+    /// The place at which a second text is found to differ from the plan.
+    fn difference(old: &str, new: &str) -> Option<(usize, usize)> {
+        assert!(PLAN.contains(old));
+        let (tree, _) = locate(PLAN, &Source::new(PLAN));
+        let second = PLAN.replacen(old, new, 1);
+        let start = Span {
+            line: 1,
+            column: 1,
+            width: 1,
+        };
+        let found = agrees(&second, &tree?, start).err()?;
+        assert_eq!(found.code, "readers-disagree");
+        Some((found.span.line, found.span.column))
+    }
+
+    #[test]
+    fn every_value_is_compared() {
+        assert_eq!(difference("alpha", "alpha"), None);
+        assert_eq!(difference("alpha: 5 %", "alpha: 5.0 %"), Some((27, 10)));
+        assert_eq!(difference("revision: 009", "revision: 9"), Some((14, 15)));
+        assert_eq!(difference("to: 5e-2", "to: 0.06"), Some((32, 30)));
+        assert_eq!(difference("  counts: pinholes\n", ""), Some((19, 3)));
+        assert_eq!(difference("  - 4711\n", ""), Some((79, 3)));
+    }
 }

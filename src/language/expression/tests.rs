@@ -172,6 +172,7 @@ fn nesting_is_bounded() {
     let nested = |depth: usize| format!("{}p <= 1{}", "(".repeat(depth), ")".repeat(depth));
     assert!(parse_text(&nested(MOST_LEVELS)).is_ok());
     assert!(parse_text(&nested(MOST_LEVELS + 1)).is_err());
+    assert!(parse_text(&vec!["(p <= 1)"; 100].join(" or ")).is_ok());
     assert!(parse_text(&"P(".repeat(100_000)).is_err());
     assert!(parse_text(&"p <= 1 or ".repeat(100_000)).is_err());
     assert!(parse_text(&vec!["p <= 1"; 1001].join(" or ")).is_err());
