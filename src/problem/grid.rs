@@ -3,8 +3,8 @@
 use crate::kernel::exact::Exact;
 use crate::space::{Lattice, LineSet, Value};
 
-/// About how many points a table has.
-const POINTS: i64 = 16;
+/// How many points a table has at most, about: steps are rounded up, so that it may be half as many.
+const POINTS: i64 = 32;
 
 /// Evenly spaced round values around everything that matters (ends of the null, ends of requirements), those ends
 /// themselves, all within the space.

@@ -85,10 +85,19 @@ fn row(record: &Record, subject: &Subject<'_>, row: &PowerRow) -> Row {
         subset: if in_null { "null" } else { "alternative" }.to_owned(),
         rejects,
         accepted,
-        envelope: row.envelope.map_or_else(|| "–".to_owned(), round::risk),
+        envelope: envelope(record, row, in_null),
         expected_size: row.expected_sample_size.map_or_else(
             || "–".to_owned(),
             |bounds| round::expected_amount(bounds.lower, bounds.upper),
         ),
+    }
+}
+
+/// In the null no test of this level rejects with more than the level.
+fn envelope(record: &Record, row: &PowerRow, in_null: bool) -> String {
+    match row.envelope {
+        Some(envelope) if in_null => round::risk_within(envelope, record.problem.alpha),
+        Some(envelope) => round::risk(envelope),
+        None => "–".to_owned(),
     }
 }

@@ -5,8 +5,11 @@
 //! brackets, points of equal acceptance rings. Colours are custom properties of the page, so that the picture follows it
 //! into the dark and onto paper.
 
+mod background;
 mod drawing;
 mod line;
+mod lines;
+mod marks;
 mod scale;
 
 use crate::record::Record;

@@ -3,7 +3,8 @@
 use crate::record::{Amount, Record};
 use crate::report::escape::inline;
 use crate::report::round;
-use crate::report::words::subject::{Subject, amount_text};
+use crate::report::words::quantity::amount_text;
+use crate::report::words::subject::Subject;
 use crate::report::words::{Fact, fact, rule, sentence};
 
 pub fn waivers(record: &Record) -> Vec<Fact> {

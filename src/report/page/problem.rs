@@ -71,13 +71,7 @@ pub fn rule_facts(record: &Record, subject: &Subject<'_>) -> Vec<Fact> {
         &rule::refusing(record, subject),
     ));
     facts.push(fact("Statistic", statistic(record, subject)));
-    facts.push(fact(
-        "Critical region",
-        format!(
-            "`{}` rejects the null; `{}` retains it.",
-            region.reject_when, region.retain_when
-        ),
-    ));
+    facts.push(fact("Critical region", region_line(record)));
     facts.push(fact(
         "Source",
         match region.source.as_str() {
@@ -203,5 +197,17 @@ fn least(record: &Record, subject: &Subject<'_>, each: &RequirementResult) -> St
         format!(" Least at {point}, by the argument given for the size.")
     } else {
         format!(" Least at {point}: {}", sentence(&each.how))
+    }
+}
+
+fn region_line(record: &Record) -> String {
+    let region = &record.critical_region;
+    if record.design.stages.is_empty() {
+        format!(
+            "`{}` rejects the null; `{}` retains it.",
+            region.reject_when, region.retain_when
+        )
+    } else {
+        "The counts of the table of limits.".to_owned()
     }
 }

@@ -2,7 +2,8 @@
 
 use crate::record::{Amount, Record};
 use crate::report::escape::inline;
-use crate::report::words::subject::{Subject, amount_text, coordinate};
+use crate::report::words::quantity::amount_text;
+use crate::report::words::subject::{Subject, coordinate};
 use crate::report::words::{Fact, claim, declared, fact, rule};
 
 use super::lines::field;

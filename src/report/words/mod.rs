@@ -8,6 +8,7 @@ pub mod family;
 pub mod glossary;
 pub mod inspection;
 pub mod limits;
+pub mod quantity;
 pub mod rectification;
 pub mod risks;
 pub mod rule;

@@ -5,7 +5,8 @@ use serde::Serialize;
 use crate::record::{Record, Rectification};
 use crate::report::round::{self, Toward};
 
-use super::subject::{Subject, coordinate, grouped};
+use super::quantity::grouped;
+use super::subject::{Subject, coordinate};
 use super::{Fact, fact};
 
 /// One row of the table of outgoing quality.

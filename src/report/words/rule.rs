@@ -3,9 +3,10 @@
 use crate::record::{Amount, CountRange, Record};
 use crate::report::escape::inline;
 
+use super::quantity::{amount_text, grouped};
 use super::sets::{Piece, pieces};
 use super::stages;
-use super::subject::{Subject, amount_text, grouped};
+use super::subject::Subject;
 
 /// What follows from an outcome.
 pub struct Outcome {

@@ -2,7 +2,8 @@
 
 use crate::record::{Amount, Record, SampleSizeSearch};
 
-use super::subject::{Subject, amount_text};
+use super::quantity::amount_text;
+use super::subject::Subject;
 use super::{Fact, fact, sentence};
 use crate::report::escape::inline;
 

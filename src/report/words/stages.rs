@@ -4,8 +4,9 @@ use serde::Serialize;
 
 use crate::record::{Amount, CountRange, Record};
 
+use super::quantity::{amount_text, grouped};
 use super::rule::{accept_clause, accepts_by_rejecting, refuse_clause};
-use super::subject::{Subject, amount_text, grouped};
+use super::subject::Subject;
 
 /// Stages in a row that share their limits.
 #[derive(Clone, Debug, PartialEq)]

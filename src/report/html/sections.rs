@@ -1,75 +1,31 @@
-//! The HTML edition, made from the Markdown edition: the same words in the same order, with the curve drawn.
-//!
-//! The page stands alone: one style, no script, nothing loaded. Raw HTML in the Markdown becomes text, pictures become
-//! their description, and links lead to pages and letters only.
+//! From the events of the Markdown to sections, lists of facts, tables and the curve.
 
 use std::fmt::Write;
 
-use minijinja::context;
 use pulldown_cmark::{CowStr, Event, HeadingLevel, LinkType, Options, Parser, Tag, TagEnd};
 
 use crate::record::Record;
+use crate::report::curve::{self, Layout};
+use crate::report::escape::is_harmless;
+use crate::report::page::status_word;
 
-use super::curve::{self, Layout};
-use super::escape::is_harmless;
-use super::page::status_word;
-use super::{COLOURS, ReportError, STYLE, environment};
+use super::text;
 
-/// The report in HTML.
-///
-/// # Errors
-/// Only a faulty template gives one.
-pub fn html(markdown: &str, record: &Record) -> Result<String, ReportError> {
+/// The laid-out body and the list of contents.
+pub struct Body {
+    /// The sections.
+    pub html: String,
+    /// The entries of the list of contents.
+    pub contents: String,
+}
+
+/// Lays the Markdown of a report out as HTML.
+pub fn body_of(markdown: &str, record: &Record) -> Body {
     let mut sections = Sections::new(record);
     for event in Parser::new_ext(markdown, Options::ENABLE_TABLES) {
         sections.take(event);
     }
-    let body = sections.finish();
-    let environment = environment()?;
-    Ok(environment.get_template("report.html")?.render(context! {
-        title => text(&format!("{} {} {}", record.plan.id, record.plan.revision, record.plan.title)),
-        style => format!("{COLOURS}{STYLE}{}", curve::style()),
-        running => running_title(record),
-        contents => body.contents,
-        body => body.html,
-    })?)
-}
-
-/// What stands at the foot of every printed page. Only characters that mean nothing to a style sheet pass.
-fn running_title(record: &Record) -> String {
-    let safe = |text: &str| -> String {
-        text.chars()
-            .filter(|c| c.is_ascii_alphanumeric() || matches!(c, '.' | '_' | '-'))
-            .collect()
-    };
-    format!(
-        "{}, revision {}, plan {}",
-        safe(&record.plan.id),
-        safe(&record.plan.revision),
-        safe(&record.plan.sha256)
-    )
-}
-
-/// Text with the characters that HTML reads as markup replaced.
-pub fn text(plain: &str) -> String {
-    let mut out = String::with_capacity(plain.len());
-    for character in plain.chars() {
-        match character {
-            '<' => out.push_str("&lt;"),
-            '>' => out.push_str("&gt;"),
-            '&' => out.push_str("&amp;"),
-            '"' => out.push_str("&quot;"),
-            '\'' => out.push_str("&#39;"),
-            _ => out.push(character),
-        }
-    }
-    out
-}
-
-/// The laid-out body and the list of contents.
-struct Body {
-    html: String,
-    contents: String,
+    sections.finish()
 }
 
 /// Turns the events of the Markdown into sections, fact lists and tables with headings for every cell.
