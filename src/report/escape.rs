@@ -49,36 +49,39 @@ fn is_hidden(character: char) -> bool {
             '\u{200B}' | '\u{200E}' | '\u{200F}' | '\u{202A}'..='\u{202E}' | '\u{2060}'..='\u{2069}' | '\u{FEFF}')
 }
 
-/// CommonMark of the author as a block quotation: nothing in it can end the quotation or reach beyond it.
+/// CommonMark of the author as a block quotation: nothing in it can end the quotation or reach beyond it. Raw HTML
+/// becomes text; pictures and acting links become their source text.
 pub fn quotation(text: &str) -> String {
-    let safe = without_active_parts(text);
-    let mut out = String::with_capacity(safe.len() + 64);
-    for line in safe.trim_end().lines() {
+    let quoted = quoted(text);
+    let once = disarm(&quoted, &active_ranges(&quoted));
+    // What was markup may now be read in another way; if anything still acts, no markup of the text is kept.
+    if active_ranges(&once).is_empty() {
+        once
+    } else {
+        let plain: Vec<String> = text.lines().map(inline).collect();
+        self::quoted(&plain.join("\n"))
+    }
+}
+
+fn quoted(text: &str) -> String {
+    let mut out = String::with_capacity(text.len() + 64);
+    for line in text.trim_end().lines() {
         let line = line.trim_end();
         out.push('>');
         if !line.is_empty() {
             out.push(' ');
-            out.extend(line.chars().map(|c| {
-                if is_hidden(c) && c != '\t' {
-                    '\u{FFFD}'
-                } else {
-                    c
-                }
-            }));
+            out.extend(line.chars().map(visible));
         }
         out.push('\n');
     }
     out
 }
 
-/// Raw HTML becomes text, pictures and acting links become their source text.
-fn without_active_parts(text: &str) -> String {
-    let once = disarm(text, &active_ranges(text));
-    // What was markup may now be read in another way; if anything still acts, no markup of the text is kept.
-    if active_ranges(&once).is_empty() {
-        once
+fn visible(character: char) -> char {
+    if is_hidden(character) && character != '\t' {
+        '\u{FFFD}'
     } else {
-        text.lines().map(inline).collect::<Vec<_>>().join("\n")
+        character
     }
 }
 

@@ -159,6 +159,8 @@ fn a_size_above_its_level_is_a_finding() {
     record.size.within_level = false;
     let text = markdown(&record).unwrap();
     assert!(text.contains("**Level exceeded**"));
+    assert!(text.contains("**Claim:** None at this level"));
+    assert!(!text.contains("is shown to be better"));
     assert!(
         html(&text, &record)
             .unwrap()

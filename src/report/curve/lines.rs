@@ -31,12 +31,12 @@ impl Drawing<'_> {
             before = place;
         }
         for run in runs.iter().filter(|run| run.len() > 1) {
-            let line = if self.subject.is_lattice() {
-                dashes(run)
+            let (kind, line) = if self.subject.is_lattice() {
+                (" steps", dashes(run))
             } else {
-                path(run)
+                ("", path(run))
             };
-            let _ = writeln!(self.out, "<path class=\"envelope\" d=\"{line}\"/>");
+            let _ = writeln!(self.out, "<path class=\"envelope{kind}\" d=\"{line}\"/>");
         }
     }
 

@@ -205,10 +205,7 @@ pub(super) fn legend(record: &Record) -> Vec<(&'static str, String)> {
         ));
     }
     if !record.acceptance.is_empty() {
-        lines.push((
-            "ring",
-            "quality accepted 95, 50, 10 % of the time".to_owned(),
-        ));
+        lines.push(("ring", "accepted 95, 50, 10 % of the time".to_owned()));
     }
     lines
 }

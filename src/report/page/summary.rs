@@ -92,11 +92,12 @@ fn status(record: &Record) -> String {
     let level = if record.size.within_level {
         "the level is kept"
     } else {
-        "**the level is exceeded**"
+        "the size is above the level"
     };
     let power = match record.requirements.len() {
         0 => "no power is required".to_owned(),
-        all => format!("{met} of {all} power requirements met"),
+        all if met == all => format!("{met} of {all} power requirements met"),
+        all => format!("**{met} of {all} power requirements met**"),
     };
     let cautions = match record.cautions.len() {
         0 => "no cautions".to_owned(),

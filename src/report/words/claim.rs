@@ -21,6 +21,17 @@ pub fn sentence(record: &Record, subject: &Subject<'_>) -> String {
     let alternative = subject.clause(&record.problem.alternative);
     let judged = subject.judged();
     let size = size(record);
+    if !record.size.within_level {
+        let wrongly = if accepts_by_rejecting(record) {
+            "passes"
+        } else {
+            "fails"
+        };
+        return format!(
+            "None at this level: while {null}, a {judged} {wrongly} with a probability of up to {size}, and the plan allows {}.",
+            percent(record.problem.alpha)
+        );
+    }
     if !accepts_by_rejecting(record) {
         return format!(
             "A {judged} fails only on evidence that {alternative}: while {null}, it fails with a probability of at most {size}. Passing means that nothing spoke against it, and bounds nothing by itself."
