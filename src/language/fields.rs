@@ -100,7 +100,7 @@ impl Fields<'_> {
                     "number-too-long",
                     node.span,
                     "this number is longer than any plan needs",
-                    "a number has at most 400 digits and an exponent of at most 400",
+                    "a number has at most 400 digits and, unless it is 0, lies between 1e-60 and 1e60",
                 );
                 None
             }

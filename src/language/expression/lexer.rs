@@ -193,7 +193,7 @@ impl Lexer {
                 self.at,
                 width,
                 format!("the number `{}` is too long", shown(&text)),
-                "a number has at most 400 digits and an exponent of at most 400",
+                "a number has at most 400 digits and, unless it is 0, lies between 1e-60 and 1e60",
             ),
             NotANumber::Malformed => fault(
                 self.at,
