@@ -3,6 +3,7 @@
 //! The whole journey of a plan is on this page: text → plan → problem → solution → record. Each step is a pure function;
 //! files, clocks and terminals live in [`command`].
 
+pub mod command;
 pub mod family;
 pub mod kernel;
 pub mod language;

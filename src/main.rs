@@ -1,3 +1,7 @@
 //! The command line of assize.
 
-fn main() {}
+use std::process::ExitCode;
+
+fn main() -> ExitCode {
+    assize::command::run()
+}

@@ -2,6 +2,7 @@
 
 mod curve;
 mod escape;
+mod glance;
 mod html;
 mod page;
 mod power_table;
@@ -16,6 +17,7 @@ use crate::record::{Record, Unwritable, sha256_hex};
 
 pub use crate::kernel::rounding as round;
 pub use curve::{Layout, svg};
+pub use glance::{Brief, Glance, GlanceRow, brief, glance};
 pub use html::html;
 
 const REPORT: &str = include_str!("../../templates/report.md.j2");

@@ -71,7 +71,8 @@ pub fn requirement(record: &Record, subject: &Subject<'_>, result: &RequirementR
     )
 }
 
-fn power(attained: Bounds, at_least: f64, met: bool) -> String {
+/// A power as it stands against what is required: rounded down.
+pub fn power(attained: Bounds, at_least: f64, met: bool) -> String {
     if met {
         round::power_required(attained.value, at_least)
     } else {
