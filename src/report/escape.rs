@@ -21,6 +21,31 @@ pub fn inline(text: &str) -> String {
     out
 }
 
+/// The program's own messages: what stands between backticks is code, all else is text of one line. Text of the plan
+/// that a message quotes may hold backticks; it becomes code or text then, and cannot become anything else.
+pub fn with_code(message: &str) -> String {
+    let parts: Vec<&str> = message.split('`').collect();
+    if parts.len().is_multiple_of(2) {
+        return inline(message);
+    }
+    let mut out = String::new();
+    for (at, part) in parts.into_iter().enumerate() {
+        let words = part.split_whitespace().collect::<Vec<_>>().join(" ");
+        if at % 2 == 1 && !words.is_empty() {
+            let shown: String = words.chars().map(visible).collect();
+            let _ = write!(out, "`{shown}`");
+        } else {
+            let spaced = |edge: bool| if edge { " " } else { "" };
+            out.push_str(spaced(part.starts_with(char::is_whitespace)));
+            out.push_str(&inline(part));
+            out.push_str(spaced(
+                part.ends_with(char::is_whitespace) && !words.is_empty(),
+            ));
+        }
+    }
+    out.trim().to_owned()
+}
+
 fn push_escaped(out: &mut String, character: char, next: Option<char>) {
     if is_hidden(character) {
         // A character that reverses or hides its neighbours would make the paper say something else than the file.
@@ -213,6 +238,15 @@ mod tests {
             assert!(active_ranges(&quotation(text)).is_empty(), "{text}");
         }
         assert!(quotation("[page](https://example.org)").contains("[page](https://example.org)"));
+    }
+
+    #[test]
+    fn messages_keep_their_code() {
+        assert_eq!(
+            with_code("Add `power: [{a}]` to *it*."),
+            "Add `power: [{a}]` to \\*it\\*."
+        );
+        assert_eq!(with_code("one ` alone <b>"), "one \\` alone \\<b>");
     }
 
     #[test]

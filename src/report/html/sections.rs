@@ -336,10 +336,10 @@ impl<'a> Sections<'a> {
     fn start_table(&mut self) {
         self.table = Table::default();
         let caption = text(&self.last_heading);
-        let kind = if self.last_heading.starts_with("Table of") {
-            "figures"
-        } else {
-            "prose"
+        let kind = match self.last_heading.as_str() {
+            "Table of the power function" => "figures subsets",
+            heading if heading.starts_with("Table of") => "figures",
+            _ => "prose",
         };
         self.raw(format!(
             "<div class=\"table {kind}\" tabindex=\"0\" role=\"region\" aria-label=\"{caption}\"><table>\n<caption>{caption}</caption>\n"

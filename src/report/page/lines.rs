@@ -2,8 +2,8 @@
 
 use serde::Serialize;
 
-use crate::report::escape::inline;
-use crate::report::words::{declared, family};
+use crate::report::escape::{inline, with_code};
+use crate::report::words::{declared, family, sentence};
 
 /// An assumption of the family, or of the plan, with what supports it.
 #[derive(Serialize)]
@@ -43,13 +43,13 @@ pub fn family_line(assumed: &family::Assumed) -> AssumptionLine {
 }
 
 pub fn assumption_line(entry: &serde_json::Value) -> AssumptionLine {
-    let evidence = field(entry, "evidence").unwrap_or_else(|| "**no evidence stated**".to_owned());
-    let support = match field(entry, "if_it_fails") {
+    let evidence = said(entry, "evidence").unwrap_or_else(|| "**No evidence stated.**".to_owned());
+    let support = match said(entry, "if_it_fails") {
         Some(then) => format!("{evidence} If it fails: {then}"),
         None => evidence,
     };
     AssumptionLine {
-        what: field(entry, "assumption").unwrap_or_default(),
+        what: said(entry, "assumption").unwrap_or_default(),
         support,
     }
 }
@@ -70,6 +70,12 @@ pub fn caution_line(caution: &crate::record::Caution) -> CautionLine {
             "W" => "warning",
             _ => "note",
         },
-        message: inline(&caution.message),
+        message: with_code(&caution.message),
     }
+}
+
+/// A field as a sentence.
+fn said(entry: &serde_json::Value, key: &str) -> Option<String> {
+    let text = entry.get(key)?.as_str()?;
+    Some(sentence(text)).filter(|text| !text.is_empty())
 }

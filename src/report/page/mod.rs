@@ -93,11 +93,13 @@ impl Page {
                 || inline(&record.problem.family),
                 |text| text.law.to_owned(),
             ),
-            family_assumptions: family
-                .map_or(&[][..], |text| text.assumed)
-                .iter()
-                .map(family_line)
-                .collect(),
+            family_assumptions: family::assumptions(
+                &record.problem.family,
+                record.inspection.is_some(),
+            )
+            .into_iter()
+            .map(family_line)
+            .collect(),
             declared_assumptions: declared::entries(record, "assumptions")
                 .iter()
                 .map(assumption_line)

@@ -17,7 +17,7 @@ pub fn identity(record: &Record) -> Vec<Fact> {
             .get("plan")
             .and_then(|plan| plan.get("supersedes"))
         {
-            Some(earlier) => fact("Supersedes", declared::text(earlier)),
+            Some(earlier) => fact("Supersedes", supersedes(earlier)),
             None => fact("Supersedes", "No earlier revision is named."),
         },
     );
@@ -39,4 +39,13 @@ pub fn requirement(record: &Record) -> Vec<Fact> {
     }
     facts.extend(declared::facts(record, "risk_link"));
     facts
+}
+
+fn supersedes(earlier: &serde_json::Value) -> String {
+    let field = |key: &str| earlier.get(key).map(declared::text);
+    match (field("revision"), field("record")) {
+        (Some(revision), Some(record)) => format!("Revision {revision}, record {record}."),
+        (Some(revision), None) => format!("Revision {revision}; its record is not named."),
+        _ => declared::text(earlier),
+    }
 }

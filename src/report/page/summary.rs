@@ -4,7 +4,7 @@ use crate::record::{Amount, Record};
 use crate::report::escape::inline;
 use crate::report::words::quantity::amount_text;
 use crate::report::words::subject::{Subject, coordinate};
-use crate::report::words::{Fact, claim, declared, fact, rule};
+use crate::report::words::{Fact, claim, declared, fact, family, rule};
 
 use super::lines::field;
 
@@ -64,9 +64,15 @@ fn assumptions_line(record: &Record) -> String {
         .iter()
         .filter(|entry| field(entry, "evidence").is_some())
         .count();
-    let family = inline(&record.problem.family.replace('_', " "));
+    let family = family::text_of(&record.problem.family).map_or_else(
+        || inline(&record.problem.family),
+        |text| text.name.to_owned(),
+    );
     match entries.len() {
         0 => format!("Of the {family} family; **the plan states no evidence for them**."),
+        1 if supported == 1 => {
+            format!("Of the {family} family; evidence is stated for the one declared.")
+        }
         all if all == supported => {
             format!("Of the {family} family; evidence is stated for each of the {all} declared.")
         }

@@ -10,6 +10,8 @@ pub struct Assumed {
 
 /// A family as a reader meets it.
 pub struct FamilyText {
+    /// Its name in a sentence.
+    pub name: &'static str,
     /// The law in one sentence.
     pub law: &'static str,
     /// Its assumptions.
@@ -31,6 +33,27 @@ const INDEPENDENT: Assumed = Assumed {
     justify: "A process in control with no mixing of streams: control charts, records of cavities, shifts and material lots; clustered faults break it.",
 };
 
+/// What is assumed of inspection where the plan states how often it errs.
+pub static ERRING_INSPECTION: Assumed = Assumed {
+    what: "Inspection errs no more often than the stated rates say.",
+    justify: "The study that gave the rates, made on units and by inspectors like these.",
+};
+
+/// The assumptions of a family, as they stand with or without stated errors of inspection.
+pub fn assumptions(family: &str, inspection_errs: bool) -> Vec<&'static Assumed> {
+    let assumed = text_of(family).map_or(&[][..], |text| text.assumed);
+    assumed
+        .iter()
+        .map(|each| {
+            if inspection_errs && each.what == SAME_JUDGEMENT.what {
+                &ERRING_INSPECTION
+            } else {
+                each
+            }
+        })
+        .collect()
+}
+
 /// The text of a family; unknown names have none.
 pub fn text_of(family: &str) -> Option<&'static FamilyText> {
     match family {
@@ -43,6 +66,7 @@ pub fn text_of(family: &str) -> Option<&'static FamilyText> {
 }
 
 static BINOMIAL: FamilyText = FamilyText {
+    name: "binomial",
     law: "The number x of nonconforming units among n inspected is binomial with parameters n and p: each unit is nonconforming with probability p.",
     assumed: &[
         INDEPENDENT,
@@ -56,6 +80,7 @@ static BINOMIAL: FamilyText = FamilyText {
 };
 
 static HYPERGEOMETRIC: FamilyText = FamilyText {
+    name: "hypergeometric",
     law: "The number x of nonconforming units among n drawn without replacement from a lot of N that holds D of them is hypergeometric.",
     assumed: &[
         Assumed {
@@ -72,6 +97,7 @@ static HYPERGEOMETRIC: FamilyText = FamilyText {
 };
 
 static POISSON: FamilyText = FamilyText {
+    name: "Poisson",
     law: "The number x of occurrences in an amount of opportunity a is Poisson with mean λ·a.",
     assumed: &[
         Assumed {
@@ -91,6 +117,7 @@ static POISSON: FamilyText = FamilyText {
 };
 
 static NEGATIVE_BINOMIAL: FamilyText = FamilyText {
+    name: "negative binomial",
     law: "Inspection goes on until the r-th nonconforming unit; the number n of units then inspected is negative binomial with parameters r and p.",
     assumed: &[
         INDEPENDENT,

@@ -65,7 +65,12 @@ impl<'a> Subject<'a> {
         let counts = self.record.characteristic.counts.as_deref()?;
         let unit = self.record.characteristic.unit.as_deref()?;
         let rest = counts.strip_prefix(plural(unit)?.as_str())?;
-        (rest.is_empty() || rest.starts_with(' ')).then(|| inline(&format!("{unit}{rest}")))
+        // `hubs that leak` would want another verb.
+        let has_verb = [" that ", " which ", " who "]
+            .iter()
+            .any(|word| rest.starts_with(word));
+        ((rest.is_empty() || rest.starts_with(' ')) && !has_verb)
+            .then(|| inline(&format!("{unit}{rest}")))
     }
 
     /// `no pouch with an open seal`, `1 pouch …`, `2 pouches …`.
@@ -74,6 +79,7 @@ impl<'a> Subject<'a> {
             (0, Some(one)) => format!("no {one}"),
             (0, None) => format!("no {}", self.counted()),
             (1, Some(one)) => format!("1 {one}"),
+            (1, None) => format!("1 of the {}", self.counted()),
             _ => format!("{} {}", grouped(number), self.counted()),
         }
     }
@@ -134,6 +140,7 @@ impl<'a> Subject<'a> {
     fn some(&self, range: CountRange) -> String {
         match (range.from, range.to) {
             (None, Some(0)) => self.some_counted(0),
+            (None, Some(1)) if self.counted_one().is_none() => format!("0 or 1 {}", self.counted()),
             (None, Some(most)) => format!("at most {}", self.some_counted(most)),
             (Some(from), Some(to)) if from == to => format!("exactly {}", self.some_counted(from)),
             _ => format!("{} {}", numbers(range), self.counted()),
