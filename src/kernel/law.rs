@@ -4,7 +4,8 @@
 //! k (the laws are log-concave). With these ratios all probabilities follow from + − × ÷ alone.
 
 use num_bigint::BigInt;
-use num_traits::{One, ToPrimitive};
+use num_rational::BigRational;
+use num_traits::{One, ToPrimitive, Zero};
 
 use super::arithmetic::{Arithmetic, DoubleDouble};
 use super::exact::Exact;
@@ -180,14 +181,21 @@ impl WaitingLaw {
 
 /// The binomial law of the number of nonconforming units among `units`; `fraction` within [0, 1].
 pub fn binomial(units: u64, fraction: &Exact) -> Law {
-    let rest = &Exact::one() - fraction;
-    if units == 0 || fraction.is_zero() {
+    let (above, below) = (
+        fraction.as_rational().numer(),
+        fraction.as_rational().denom(),
+    );
+    let rest = below - above;
+    if units == 0 || above.is_zero() {
         return Law::Point(0);
     }
-    let Some(odds) = fraction.checked_div(&rest) else {
+    if rest.is_zero() {
         return Law::Point(units);
-    };
-    let mode = (&Exact::from(units + 1) * fraction).floor();
+    }
+    let mode = (above * (units + 1)) / below;
+    // With a/b in lowest terms, so are a/(b − a) and (b − a)/b: nothing needs to be reduced.
+    let odds = Exact::from_rational(BigRational::new_raw(above.clone(), rest.clone()));
+    let rest = Exact::from_rational(BigRational::new_raw(rest, below.clone()));
     Law::Ratios(RatioLaw {
         low: 0,
         high: Some(units),
@@ -262,5 +270,5 @@ pub fn power(base: &Exact, exponent: u64) -> Exact {
     let exponent = exponent.min(u64::from(u32::MAX)) as u32;
     result *= base.as_rational().numer().pow(exponent);
     bottom *= base.as_rational().denom().pow(exponent);
-    Exact::from_rational(num_rational::BigRational::new(result, bottom))
+    Exact::from_rational(BigRational::new(result, bottom))
 }

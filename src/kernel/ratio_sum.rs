@@ -14,6 +14,8 @@ use super::region::Region;
 
 /// Widest relative enclosure taken from doubles; beyond it pairs of doubles are used.
 const WIDEST_IN_DOUBLES: f64 = 4e-12;
+/// Below this neither precision tells more than "positive, and below every normal double".
+const SMALLEST: f64 = 1e-307;
 /// Terms are rescaled when they fall below this, far above underflow in either precision.
 const TINY: f64 = 1.0 / HUGE;
 /// 2⁵⁰⁰.
@@ -112,7 +114,8 @@ fn of_ratio_law(law: &RatioLaw, event: &Region) -> Enclosure {
         Reduced::Event(event) => {
             let quick = law.ratio.in_doubles(law.low, law.high.unwrap_or(FARTHEST));
             let enclosure = Walk::new(law, &event, &quick).enclosure();
-            if enclosure.relative_width() <= WIDEST_IN_DOUBLES {
+            let vanishes = enclosure.lower() == 0.0 && enclosure.upper() < SMALLEST;
+            if vanishes || enclosure.relative_width() <= WIDEST_IN_DOUBLES {
                 return enclosure;
             }
             let fine = Walk::new(law, &event, &law.ratio.in_double_doubles()).enclosure();

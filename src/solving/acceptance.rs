@@ -7,6 +7,9 @@ use super::operating::{Operating, last_true};
 use super::region::Form;
 use super::rule::Rule;
 
+/// Relative width at which the search for a quality stops.
+const PRECISE: f64 = 1e-13;
+
 /// The parameter value at which lots are released with a probability; on a lattice the largest value with at least that
 /// probability. `None` where acceptance is not monotone or never crosses the probability.
 pub fn accepted_with(
@@ -75,7 +78,7 @@ fn bisect(
     }
     for _ in 0..200 {
         let middle = low + (high - low) / 2.0;
-        if middle <= low || middle >= high {
+        if high - low <= PRECISE * high || middle <= low || middle >= high {
             break;
         }
         if is_before(middle) {

@@ -278,7 +278,7 @@ impl<'a> Amounts<'a> {
         let first = first.ok_or_else(|| self.exhausted(last))?;
         let proved_to = self
             .most
-            .min(first.saturating_add(first.clamp(64, TRIALS_BEYOND)));
+            .min(first.saturating_add((first / 2).clamp(50, TRIALS_BEYOND)));
         let mut every_from = first;
         for index in first + 1..=proved_to {
             self.tell("larger sample sizes tried", index, Some(proved_to))?;
