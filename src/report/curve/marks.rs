@@ -46,22 +46,30 @@ impl Drawing<'_> {
                 Toward::Up
             };
             let value = self.subject.computed(at, toward);
-            let class = if rises { "note end" } else { "note" };
-            let aside = if rises { -10.0 } else { 10.0 };
-            let bottom = self.measures.plot[3];
-            self.line("drop", place.x, place.y, place.x, bottom);
-            self.circle("ring", place, 4.5);
             let said = if self.subject.is_lattice() {
                 format!("at least {} % accepted up to {value}", share_text(share))
             } else {
                 format!("{} % accepted at {value}", share_text(share))
             };
-            self.label(
-                class,
-                place.x + aside,
-                place.y + if share < 0.3 { -8.0 } else { 4.0 },
-                &said,
-            );
+            self.line("drop", place.x, place.y, place.x, self.measures.plot[3]);
+            self.circle("ring", place, 4.5);
+            let lift = if share < 0.3 { -8.0 } else { 4.0 };
+            self.note(place, rises, lift, &said);
+        }
+    }
+
+    /// Words beside a ring, on the side that the curve leaves free, and never beyond the sheet.
+    fn note(&mut self, ring: Place, to_the_left: bool, lift: f64, words: &str) {
+        // About the width of a letter; there is nothing to measure with.
+        let width = 6.5 * words.chars().count() as f64;
+        let [left, _, right, _] = self.measures.plot;
+        let y = ring.y + lift;
+        if to_the_left && ring.x - 10.0 - width >= left {
+            self.label("note end", ring.x - 10.0, y, words);
+        } else if !to_the_left && ring.x + 10.0 + width > right {
+            self.label("note end", right, y, words);
+        } else {
+            self.label("note", ring.x + 10.0, y, words);
         }
     }
 

@@ -43,6 +43,7 @@ struct Sections<'a> {
     table: Table,
     links: Vec<bool>,
     curve_next: bool,
+    in_file: bool,
 }
 
 #[derive(Clone, Copy, PartialEq)]
@@ -83,6 +84,7 @@ impl<'a> Sections<'a> {
             table: Table::default(),
             links: Vec::new(),
             curve_next: false,
+            in_file: false,
         }
     }
 
@@ -117,11 +119,15 @@ impl<'a> Sections<'a> {
             last.push_str(&words);
         }
         self.table.words.push_str(&words);
-        if self.label == Label::Reading {
+        if self.in_file {
+            self.events.push(Event::Text(words));
+        } else if self.label == Label::Reading {
             let label = words.strip_suffix(':').unwrap_or(&words).to_owned();
             self.events.push(Event::Text(label.into()));
         } else {
-            self.events.push(Event::Text(words));
+            // A figure and its sign stay on one line.
+            self.events
+                .push(Event::Text(words.replace(" %", "\u{a0}%").into()));
         }
     }
 
@@ -182,6 +188,7 @@ impl<'a> Sections<'a> {
             }
             Tag::Image { .. } => {}
             Tag::CodeBlock(kind) => {
+                self.in_file = true;
                 self.raw("<div class=\"scroll\" tabindex=\"0\" role=\"region\" aria-label=\"Text of a file\">");
                 self.events.push(Event::Start(Tag::CodeBlock(kind)));
             }
@@ -233,6 +240,7 @@ impl<'a> Sections<'a> {
             }
             TagEnd::Image => {}
             TagEnd::CodeBlock => {
+                self.in_file = false;
                 self.events.push(Event::End(TagEnd::CodeBlock));
                 self.raw("</div>\n");
             }

@@ -77,10 +77,7 @@ pub fn reproduce(record: &Record) -> Vec<Fact> {
                 record.assize.language
             ),
         ),
-        fact(
-            "Plan",
-            "Save the plan's text below as a file; its hash is the plan hash.".to_owned(),
-        ),
+        fact("Plan", save(record)),
         fact("Command", format!("`assize compile {name}.yaml`")),
         fact(
             "Expect",
@@ -117,4 +114,13 @@ pub fn cross_check(record: &Record) -> Vec<Fact> {
         ),
         fact("The bounds rest on", sentence(&check.rests_on)),
     ]
+}
+
+fn save(record: &Record) -> String {
+    let end = if record.plan.text.ends_with('\n') {
+        ""
+    } else {
+        " without a line feed at its end"
+    };
+    format!("Save the plan's text below as a file{end}; its SHA-256 is the plan hash.")
 }

@@ -16,9 +16,7 @@ pub fn cautions(record: &Record, subject: &Subject<'_>) -> Vec<String> {
         "The risks hold for units drawn at random from the stated population, and for a lot made alike throughout. Mixed cavities, shifts or materials want a sample each.".to_owned(),
         "The risks cover the chance of sampling alone: not a wrong test method, a wrong build, a biased drawing, nor a law of the observations that does not hold.".to_owned(),
     ];
-    if record.characteristic.hazard.is_some() {
-        said.push("Where not a single escape can be borne, a sample is not the control: inspect every unit or make the fault impossible, and use this plan to verify that control.".to_owned());
-    }
+    said.push("Where not a single escape can be borne, a sample is not the control: inspect every unit or make the fault impossible, and use this plan to verify that control.".to_owned());
     if !accepts_by_rejecting(record) {
         said.push("The null here says that the lot is good. Retaining it is no proof of that; what protects the receiver is the power in the alternative.".to_owned());
         said.push("An agreed quality level is an index for running inspection, not a licence to ship nonconforming units.".to_owned());

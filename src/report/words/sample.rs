@@ -3,6 +3,7 @@
 use crate::record::{Amount, Record, SampleSizeSearch};
 
 use super::quantity::amount_text;
+use super::rule::capitalised;
 use super::subject::Subject;
 use super::{Fact, fact, sentence};
 use crate::report::escape::inline;
@@ -20,13 +21,16 @@ pub fn facts(record: &Record, subject: &Subject<'_>) -> Vec<Fact> {
         "Smallest that works",
         format!(
             "{}: the first that keeps the level and meets every requirement.",
-            amount(record, subject, search.smallest)
+            capitalised(&amount(record, subject, search.smallest))
         ),
     )];
     if let Some(chosen) = chosen.filter(|chosen| *chosen != search.smallest) {
         facts.push(fact(
             "Chosen",
-            format!("{}, as the plan states.", amount(record, subject, chosen)),
+            format!(
+                "{}, as the plan states.",
+                capitalised(&amount(record, subject, chosen))
+            ),
         ));
     }
     facts.push(fact(
