@@ -6,7 +6,7 @@ use super::{Context, Finding};
 /// Revisions that replace none.
 const FIRST_REVISIONS: [&str; 7] = ["A", "0", "00", "000", "1", "01", "001"];
 
-/// L01. Inspectors cite samples "without statistical rationale" more than any other fault of a plan.
+/// L01. A sample size without a reason is a standing objection of inspectors.
 pub fn rationale(context: &Context<'_>) -> Option<Finding> {
     let plan = context.plan;
     let said =
