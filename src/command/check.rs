@@ -66,9 +66,7 @@ pub struct Checked {
 
 pub fn run(arguments: &Arguments) -> Status {
     let gathered = file_text::gather(&arguments.plans);
-    for trouble in &gathered.troubles {
-        terminal::complain(trouble);
-    }
+    gathered.tell();
     let mut status = gathered.status();
     let mut all = Vec::new();
     for path in &gathered.paths {
@@ -176,8 +174,11 @@ fn tell(checked: &Checked) {
         };
         let _ = writeln!(out, "{}: {word}: {}", checked.name, harmless(trouble));
     }
-    let _ = write!(out, "{}: {}", checked.name, counted(&checked.findings));
-    terminal::say(&out);
+    // Nobody counts the findings of a text that nobody could read.
+    if checked.trouble.is_none() || checked.status == Status::Finding {
+        let _ = write!(out, "{}: {}", checked.name, counted(&checked.findings));
+    }
+    terminal::say(out.trim_end());
 }
 
 /// `2 errors, 1 caution`, or that there is nothing to say.

@@ -5,6 +5,8 @@ use std::path::{Path, PathBuf};
 
 use clap::Args;
 
+use crate::language::suggestion;
+
 use super::status::Status;
 use super::whole_file::{write_new, write_whole};
 use super::{file_text, terminal};
@@ -77,7 +79,11 @@ pub fn run(arguments: &Arguments) -> Status {
             "there is no draft of the kind `{}`",
             crate::language::render::harmless(asked)
         ));
-        terminal::say(&format!("    help: the kinds are\n{}", list().trim_end()));
+        let kinds = DRAFTS.iter().map(|draft| draft.kind);
+        terminal::say(&match suggestion::nearest(asked, kinds) {
+            Some(meant) => format!("    help: did you mean `{meant}`?"),
+            None => format!("    help: the kinds are\n{}", list().trim_end()),
+        });
         return Status::BadInput;
     };
     match &arguments.out {
@@ -109,10 +115,10 @@ fn to_file(path: &Path, text: &str, replace: bool) -> Status {
         Err(fault) => {
             let shown = file_text::shown(path);
             if fault.kind() == std::io::ErrorKind::AlreadyExists {
-                terminal::complain(&format!("{shown}: this file exists and is kept"));
+                terminal::complain_about(&shown, "this file exists and is kept");
                 terminal::say("    help: choose another name, or write over it with --replace");
             } else {
-                terminal::complain(&format!("{shown}: cannot be written: {fault}"));
+                terminal::complain_about(&shown, &format!("cannot be written: {fault}"));
             }
             Status::BadInput
         }

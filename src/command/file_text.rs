@@ -30,7 +30,7 @@ impl Unread {
     /// Tells it on standard error.
     pub fn tell(&self, name: &str) {
         match self {
-            Self::File(reason) => terminal::complain(&format!("{name}: {reason}")),
+            Self::File(reason) => terminal::complain_about(name, reason),
             Self::Text(diagnostic, text) => {
                 let shown = terminal::finding(diagnostic, name, &Source::new(text));
                 terminal::say(shown.trim_end());
@@ -117,11 +117,18 @@ fn too_large() -> Diagnostic {
 pub struct Gathered {
     /// The files, in a fixed order.
     pub paths: Vec<PathBuf>,
-    /// Folders that hold no plan or cannot be read.
-    pub troubles: Vec<String>,
+    /// Folders that hold no plan or cannot be read, and what is wrong with each.
+    pub troubles: Vec<(String, String)>,
 }
 
 impl Gathered {
+    /// Tells what is wrong on standard error.
+    pub fn tell(&self) {
+        for (name, what) in &self.troubles {
+            terminal::complain_about(name, what);
+        }
+    }
+
     /// What it means for the exit status so far.
     pub fn status(&self) -> Status {
         if self.troubles.is_empty() {
@@ -145,13 +152,11 @@ pub fn gather(asked: &[PathBuf]) -> Gathered {
         }
         let before = paths.len();
         if let Err(fault) = below(path, &mut paths) {
-            troubles.push(format!(
-                "{}: the folder cannot be read: {fault}",
-                shown(path)
-            ));
+            troubles.push((shown(path), format!("the folder cannot be read: {fault}")));
         } else if paths.len() == before {
             let name = shown(path);
-            troubles.push(format!("{name}: no plan in this folder (*.yaml or *.yml)"));
+            let what = "no plan in this folder (*.yaml or *.yml)".to_owned();
+            troubles.push((name, what));
         }
     }
     let mut seen = BTreeSet::new();

@@ -34,7 +34,7 @@ pub fn run(arguments: &Arguments) -> Status {
     done.unwrap_or_else(|fault| {
         let place = arguments.out.as_deref().map(file_text::shown);
         let place = place.unwrap_or_else(|| "standard output".to_owned());
-        terminal::complain(&format!("{place}: the manual cannot be written: {fault}"));
+        terminal::complain_about(&place, &format!("the manual cannot be written: {fault}"));
         Status::BadInput
     })
 }

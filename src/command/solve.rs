@@ -53,7 +53,7 @@ pub fn run(arguments: &Arguments) -> Status {
     progress.done();
     match compiled {
         Err(InternalError(reason)) => {
-            terminal::complain(&format!("{name}: internal error: {reason}"));
+            terminal::complain_about(&name, &format!("internal error: {reason}"));
             Status::Internal
         }
         Ok(compilation) => {
@@ -84,7 +84,7 @@ fn show(mut record: Record, json: bool, name: &str, cautions: usize) -> Status {
         match record::seal(&mut record).and_then(|()| record::record_json(&record)) {
             Ok(text) => text,
             Err(fault) => {
-                terminal::complain(&format!("{name}: internal error: {fault}"));
+                terminal::complain_about(name, &format!("internal error: {fault}"));
                 return Status::Internal;
             }
         }

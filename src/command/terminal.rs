@@ -59,9 +59,14 @@ pub fn say(text: &str) {
     let _ = writeln!(out, "{text}");
 }
 
-/// An error that belongs to no place in a plan.
+/// An error that belongs to no file.
 pub fn complain(message: &str) {
     say(&format!("{}: {message}", styled("error", RED)));
+}
+
+/// An error that belongs to a file but to no place in it.
+pub fn complain_about(name: &str, message: &str) {
+    say(&format!("{name}: {}: {message}", styled("error", RED)));
 }
 
 /// A finding about a plan as it stands on a terminal.
@@ -116,6 +121,16 @@ pub fn cut(text: &str, columns: usize) -> String {
     format!("{kept}…")
 }
 
+/// The same for a path, whose end says more than its beginning.
+pub fn cut_front(text: &str, columns: usize) -> String {
+    let length = text.chars().count();
+    if length <= columns {
+        return text.to_owned();
+    }
+    let left_out = length + 1 - columns;
+    format!("…{}", text.chars().skip(left_out).collect::<String>())
+}
+
 #[cfg(test)]
 mod tests {
     use super::*;
@@ -132,6 +147,8 @@ mod tests {
     fn cut_text_says_that_it_is_cut() {
         assert_eq!(cut("abcdef", 4), "abc…");
         assert_eq!(cut("abcd", 4), "abcd");
+        assert_eq!(cut_front("abcdef", 4), "…def");
+        assert_eq!(cut_front("abcd", 4), "abcd");
     }
 
     #[test]

@@ -58,9 +58,7 @@ Exit status, the worst of all plans:
 
 pub fn run(arguments: &Arguments) -> Status {
     let gathered = file_text::gather(&arguments.plans);
-    for trouble in &gathered.troubles {
-        terminal::complain(trouble);
-    }
+    gathered.tell();
     let mut status = gathered.status();
     if gathered.paths.is_empty() {
         return status;
@@ -68,7 +66,7 @@ pub fn run(arguments: &Arguments) -> Status {
     let cabinet = match Cabinet::open(&arguments.out, arguments.replace) {
         Ok(cabinet) => cabinet,
         Err(reason) => {
-            terminal::complain(&format!("{}: {reason}", file_text::shown(&arguments.out)));
+            terminal::complain_about(&file_text::shown(&arguments.out), &reason);
             return Status::BadInput;
         }
     };
@@ -82,7 +80,7 @@ pub fn run(arguments: &Arguments) -> Status {
         checksums.extend(outcome.checksums.iter().cloned());
     }
     if let Err(reason) = cabinet.list(checksums) {
-        terminal::complain(&format!("{}: {reason}", file_text::shown(&arguments.out)));
+        terminal::complain_about(&file_text::shown(&arguments.out), &reason);
         status = status.max(Status::BadInput);
     }
     terminal::result(&summary::table(&outcomes, &arguments.out), status)

@@ -5,7 +5,7 @@ use std::path::Path;
 
 use crate::command::file_text;
 use crate::command::status::Status;
-use crate::command::terminal::{BOLD, GREEN, RED, YELLOW, cut, styled};
+use crate::command::terminal::{BOLD, GREEN, RED, YELLOW, cut, cut_front, styled};
 
 use super::cabinet::Filed;
 use super::job::Outcome;
@@ -19,7 +19,7 @@ const HEADINGS: [&str; 7] = [
     "tightest requirement",
     "status",
 ];
-/// No cell is wider.
+/// No cell is wider, but for the last.
 const WIDEST_CELL: usize = 40;
 
 /// The table of a run, and a line that counts.
@@ -62,7 +62,10 @@ fn line(cells: &[String; 7], widths: &[usize]) -> String {
 fn cells(outcome: &Outcome) -> [String; 7] {
     let (plan, revision) = match &outcome.identity {
         Some(identity) => (identity.id.clone(), identity.revision.clone()),
-        None => (file_text::shown(&outcome.path), String::new()),
+        None => (
+            cut_front(&file_text::shown(&outcome.path), WIDEST_CELL),
+            String::new(),
+        ),
     };
     let dash = || "–".to_owned();
     let (sample, rule, size, requirement) = match &outcome.brief {
@@ -74,6 +77,8 @@ fn cells(outcome: &Outcome) -> [String; 7] {
         ),
         None => (dash(), dash(), dash(), dash()),
     };
+    let [plan, revision, sample, rule, size, requirement] =
+        [plan, revision, sample, rule, size, requirement].map(|cell| cut(&cell, WIDEST_CELL));
     [
         plan,
         revision,
@@ -83,7 +88,6 @@ fn cells(outcome: &Outcome) -> [String; 7] {
         requirement,
         status(outcome),
     ]
-    .map(|cell| cut(&cell, WIDEST_CELL))
 }
 
 fn status(outcome: &Outcome) -> String {
