@@ -185,7 +185,7 @@ def hypergeometric():
     yield h(10, 10, "above", ["1"], "0.01", ["0"])
     yield h(125, 1000, "above", ["40"], "0.1", ["5", "10"], null="D > 39")
     yield h(30, 200, "above", ["150"], "0.05", ["120", "100"])
-    yield h(100, 240, "above", ["5 %"], "0.05", ["0.01", "0.02"], scale=240)
+    yield h(100, 240, "above", ["5 %"], "0.05", ["0.0125", "0.025"], scale=240)
     # 4.9 % of 240 units is 11.76: the null begins at 12 units; above 5 % it begins at 13.
     yield h(60, 240, "above", ["0.05"], "0.05", ["0.0125"], scale=240, null="p >= 4.9 %")
     yield h(60, 240, "above", ["13"], "0.05", ["3"], null="D > 12")
