@@ -100,7 +100,12 @@ fn differences(row: &Row, record: &Record) -> Vec<String> {
             found.push(format!("{what} {instead} misses {value}"));
         }
     };
-    compare("size", record.size.lower, record.size.upper, row.get("size"));
+    compare(
+        "size",
+        record.size.lower,
+        record.size.upper,
+        row.get("size"),
+    );
     for (result, attained) in record.requirements.iter().zip(row.list("attained")) {
         compare(
             "attained",
@@ -112,7 +117,12 @@ fn differences(row: &Row, record: &Record) -> Vec<String> {
     for (point, power) in row.list("points").into_iter().zip(row.list("powers")) {
         match power_row(row, record, point) {
             Some(line) => compare(&format!("power at {point}"), line.lower, line.upper, power),
-            None => compare(&format!("power at {point}, which has no row,"), -1.0, -1.0, power),
+            None => compare(
+                &format!("power at {point}, which has no row,"),
+                -1.0,
+                -1.0,
+                power,
+            ),
         }
     }
     if region(record, row) != row.get("region") {
@@ -122,7 +132,8 @@ fn differences(row: &Row, record: &Record) -> Vec<String> {
             row.get("region")
         ));
     }
-    if !row.get("worst_at").is_empty() && at(&record.size.at) != value_at(row, row.get("worst_at")) {
+    if !row.get("worst_at").is_empty() && at(&record.size.at) != value_at(row, row.get("worst_at"))
+    {
         found.push(format!(
             "size at {} instead of {}",
             at(&record.size.at),

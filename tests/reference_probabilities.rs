@@ -70,7 +70,11 @@ fn every_enclosure_holds_the_value_of_ninety_digits_and_is_narrow() {
                 row.get("probability")
             ));
         }
-        let widest = if enclosure.upper() < 1e-100 { 1e-10 } else { 1e-11 };
+        let widest = if enclosure.upper() < 1e-100 {
+            1e-10
+        } else {
+            1e-11
+        };
         if enclosure.relative_width() > widest {
             findings.push(format!(
                 "{}: relative width {:e}",
@@ -93,9 +97,15 @@ fn a_second_library_agrees_in_doubles() {
         compared += 1;
         let middle = enclosure.middle();
         if (witness - middle).abs() > DOUBLES * witness {
-            findings.push(format!("{}: {middle:e} against {witness:e}", described(&row)));
+            findings.push(format!(
+                "{}: {middle:e} against {witness:e}",
+                described(&row)
+            ));
         }
     }
-    assert!(compared >= 300, "only {compared} rows have a second witness");
+    assert!(
+        compared >= 300,
+        "only {compared} rows have a second witness"
+    );
     report(&findings);
 }

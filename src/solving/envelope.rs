@@ -16,6 +16,10 @@ use super::operating::{Operating, last_true};
 
 /// Added to a bound from duality for the rounding of its sums and multipliers.
 const SLACK: f64 = 1e-11;
+/// How far a share may lie outside [0, 1] by rounding alone.
+const SHARE: f64 = 1e-9;
+/// Most outcomes an end of a range is moved by before the search is given up.
+const MOST_MOVES: usize = 10_000;
 
 /// The envelope at a true parameter value, rounded up; `None` where the plan tries more than once, which no single test
 /// of the same units does.
@@ -117,6 +121,15 @@ struct Terms {
     b: f64,
 }
 
+/// A point of the alternative with a null neighbour on either side.
+struct Between<'a, 'b> {
+    operating: &'a Operating<'b>,
+    a: &'a Value,
+    b: &'a Value,
+    observed: &'a Value,
+    level: f64,
+}
+
 /// Bound with a null neighbour on either side.
 fn against_two(
     operating: &Operating<'_>,
@@ -125,61 +138,131 @@ fn against_two(
     observed: &Value,
     alpha: &Level,
 ) -> Result<f64, Obstacle> {
-    let terms = |count: u64| {
-        let outcome = Region::between(count, count);
-        let at = |value: &Value| operating.single(&outcome, value).middle();
+    let start = balanced_range(operating, a, b, observed, alpha)?;
+    let between = Between {
+        operating,
+        a,
+        b,
+        observed,
+        level: alpha.above(),
+    };
+    let (from, to) = between.settled(start);
+    Ok(between.bound(from, to))
+}
+
+impl Between<'_, '_> {
+    fn chance(&self, from: u64, to: u64) -> Terms {
+        let range = Region::between(from, to);
+        let at = |value: &Value| self.operating.single(&range, value).middle();
         Terms {
-            v: at(observed),
-            a: at(a),
-            b: at(b),
+            v: at(self.observed),
+            a: at(self.a),
+            b: at(self.b),
         }
-    };
-    let (from, to) = balanced_range(operating, a, b, observed, alpha)?;
-    // The multipliers make the outcomes at both ends of the range indifferent.
-    let (first, last) = (terms(from), terms(to));
-    let determinant = first.a * last.b - first.b * last.a;
-    if determinant.abs() < f64::MIN_POSITIVE {
-        return Ok(1.0);
     }
-    let lambda_a = ((first.v * last.b - first.b * last.v) / determinant).max(0.0);
-    let lambda_b = ((first.a * last.v - first.v * last.a) / determinant).max(0.0);
-    let gain = |count: u64| {
-        let t = terms(count);
-        t.v - lambda_a * t.a - lambda_b * t.b
-    };
-    // Total positivity: the gain is positive on one range only. Its ends are moved until it is.
-    let (low, high) = operating.outcomes();
-    let high = high.unwrap_or(u64::MAX);
-    let (mut from, mut to) = (from, to);
-    let mut moves = 0;
-    while moves < 10_000 && from > low && gain(from - 1) > 0.0 {
-        from -= 1;
-        moves += 1;
+
+    fn term(&self, count: u64) -> Terms {
+        self.chance(count, count)
     }
-    while moves < 10_000 && to < high && gain(to + 1) > 0.0 {
-        to += 1;
-        moves += 1;
+
+    /// The shares of the first and the last outcome with which the range uses the level up at both neighbours.
+    fn shares(&self, from: u64, to: u64) -> Option<(f64, f64)> {
+        let (first, last) = (self.term(from), self.term(to));
+        // Empty, and its probabilities zero, where both are neighbours.
+        let inner = self.chance(from + 1, to.saturating_sub(1));
+        let determinant = first.a * last.b - first.b * last.a;
+        if determinant.abs() < f64::MIN_POSITIVE {
+            return None;
+        }
+        let (spare_a, spare_b) = (self.level - inner.a, self.level - inner.b);
+        Some((
+            (spare_a * last.b - spare_b * last.a) / determinant,
+            (first.a * spare_b - first.b * spare_a) / determinant,
+        ))
     }
-    while moves < 10_000 && from < to && gain(from) < 0.0 {
-        from += 1;
-        moves += 1;
+
+    /// Moves the ends until both shares are shares: a share above one asks for one more outcome on its side, a negative
+    /// one for one less. Where it stops otherwise, the bound is still a bound, only not the least one.
+    fn settled(&self, start: (u64, u64)) -> (u64, u64) {
+        let (low, high) = self.operating.outcomes();
+        let high = high.unwrap_or(u64::MAX);
+        let (mut from, mut to) = start;
+        if from >= to {
+            // One outcome has one share: two are needed to meet two levels.
+            to = (from + 1).min(high);
+            from = from.min(to.saturating_sub(1));
+        }
+        for _ in 0..MOST_MOVES {
+            let Some((left, right)) = self.shares(from, to) else {
+                break;
+            };
+            let before = (from, to);
+            if left > 1.0 + SHARE && from > low {
+                from -= 1;
+            } else if left < -SHARE {
+                from += 1;
+            }
+            if right > 1.0 + SHARE && to < high {
+                to += 1;
+            } else if right < -SHARE {
+                to -= 1;
+            }
+            if from >= to {
+                return before;
+            }
+            if (from, to) == before {
+                break;
+            }
+        }
+        (from, to)
     }
-    while moves < 10_000 && from < to && gain(to) < 0.0 {
-        to -= 1;
-        moves += 1;
+
+    /// The bound by duality, with the multipliers that make the outcomes at both ends of a range indifferent.
+    fn bound(&self, from: u64, to: u64) -> f64 {
+        let (first, last) = (self.term(from), self.term(to));
+        let determinant = first.a * last.b - first.b * last.a;
+        if determinant.abs() < f64::MIN_POSITIVE {
+            return 1.0;
+        }
+        let lambda_a = ((first.v * last.b - first.b * last.v) / determinant).max(0.0);
+        let lambda_b = ((first.a * last.v - first.v * last.a) / determinant).max(0.0);
+        let gain = |count: u64| {
+            let term = self.term(count);
+            term.v - lambda_a * term.a - lambda_b * term.b
+        };
+        let Some((from, to)) = self.gaining(gain, (from, to)) else {
+            return 1.0;
+        };
+        let range = Region::between(from, to);
+        let sum = self.operating.single(&range, self.observed).upper()
+            - lambda_a * self.operating.single(&range, self.a).lower()
+            - lambda_b * self.operating.single(&range, self.b).lower();
+        let spent = self.level * (lambda_a + lambda_b);
+        let slack = SLACK * (1.0 + spent + lambda_a + lambda_b);
+        (spent + sum.max(0.0) + slack).min(1.0)
     }
-    if moves >= 10_000 {
-        return Ok(1.0);
+
+    /// The outcomes with a positive gain. Total positivity: they form one range; the ends of a nearby one are moved until
+    /// it is that.
+    fn gaining(&self, gain: impl Fn(u64) -> f64, start: (u64, u64)) -> Option<(u64, u64)> {
+        let (low, high) = self.operating.outcomes();
+        let high = high.unwrap_or(u64::MAX);
+        let (mut from, mut to) = start;
+        for _ in 0..MOST_MOVES {
+            if from > low && gain(from - 1) > 0.0 {
+                from -= 1;
+            } else if to < high && gain(to + 1) > 0.0 {
+                to += 1;
+            } else if from < to && gain(from) < 0.0 {
+                from += 1;
+            } else if from < to && gain(to) < 0.0 {
+                to -= 1;
+            } else {
+                return Some((from, to));
+            }
+        }
+        None
     }
-    let range = Region::between(from, to);
-    let sum = operating.single(&range, observed).upper()
-        - lambda_a * operating.single(&range, a).lower()
-        - lambda_b * operating.single(&range, b).lower();
-    let bound = alpha.above() * (lambda_a + lambda_b) + sum.max(0.0);
-    Ok(
-        (bound + SLACK * (1.0 + alpha.above() * (lambda_a + lambda_b) + lambda_a + lambda_b))
-            .min(1.0),
-    )
 }
 
 /// The range whose randomised version uses α up at both neighbours, or nearly so: starts move until the ends balance.
