@@ -234,6 +234,8 @@ mod tests {
             "[go][x]\n\n[x]: javascript:alert(1)",
             "<javascript:alert(1)>",
             "<!-- hidden",
+            // Closed by the mark of the quotation on its next line.
+            ":<!a\n<",
         ] {
             assert!(active_ranges(&quotation(text)).is_empty(), "{text}");
         }
