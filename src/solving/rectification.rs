@@ -1,8 +1,10 @@
 //! Rectifying inspection: lots that are not released are inspected whole and their nonconforming units replaced.
 //!
-//! With Pa(p) the probability of release, AOQ = p·Pa·(N − n)/N and ATI = n + (1 − Pa)·(N − n) (Dodge and Romig;
-//! NIST/SEMATECH e-Handbook 6.2.3.2). The average outgoing quality limit is the supremum of AOQ over the whole
-//! parameter space; Pa falls in p, so AOQ ≤ b·Pa(a)·(N − n)/N on [a, b], and branch and bound closes on it.
+//! With Paᵢ(p) the probability of release after nᵢ units, the share of the lot that nobody looks at is
+//! S(p) = Σ Paᵢ·(N − nᵢ)/N, and AOQ = p·S, ATI = N·(1 − S). For a single sample that is AOQ = p·Pa·(N − n)/N and
+//! ATI = n + (1 − Pa)·(N − n) (Dodge and Romig; NIST/SEMATECH e-Handbook 6.2.3.2). The average outgoing quality limit
+//! is the supremum of AOQ over the whole parameter space. S falls in p: where the count is coupled to stay below, a lot
+//! is released at the same stage or before. So AOQ ≤ b·S(a) on [a, b], and branch and bound closes on it.
 
 use std::collections::BinaryHeap;
 
@@ -47,7 +49,6 @@ pub struct RectifiedPoint {
 struct Sorting<'a, 'b> {
     rule: &'a Rule<'b>,
     lot: f64,
-    sample: f64,
 }
 
 /// What sorting of lots of a size does; `None` where release does not fall along the parameter.
@@ -65,7 +66,6 @@ pub fn rectified(rule: &Rule<'_>, lot_size: u64, points: &[PowerPoint]) -> Optio
     let sorting = Sorting {
         rule,
         lot: lot_size as f64,
-        sample: rule.operating.amount.to_f64(),
     };
     let (aoql, aoql_at) = sorting.limit()?;
     Some(Rectified {
@@ -84,36 +84,24 @@ pub fn rectified(rule: &Rule<'_>, lot_size: u64, points: &[PowerPoint]) -> Optio
 }
 
 impl Sorting<'_, '_> {
-    fn released(&self, at: &Value) -> Enclosure {
-        if self.rule.operating.problem.accept_when == AcceptWhen::NullRejected {
-            self.rule.rejection(at)
-        } else {
-            self.rule.retention(at)
-        }
+    /// The share of a lot that is released without being looked at.
+    fn unseen(&self, at: &Value) -> Enclosure {
+        let released = self.rule.released_after(at);
+        released
+            .into_iter()
+            .map(|(amount, released)| times(released, (self.lot - amount).max(0.0) / self.lot))
+            .fold(Enclosure::ZERO, Enclosure::plus)
+            .as_probability()
     }
 
-    /// p·Pa·(N − n)/N, rounded outwards.
+    /// p·S, rounded outwards.
     fn outgoing(&self, at: &Value) -> Enclosure {
-        self.mixed(at, self.released(at))
+        times(self.unseen(at), at.to_f64())
     }
 
-    fn mixed(&self, quality: &Value, released: Enclosure) -> Enclosure {
-        let left = (self.lot - self.sample) / self.lot;
-        let p = quality.to_f64();
-        let down = (p.next_down() * released.lower()).next_down() * left.next_down();
-        let up = (p.next_up() * released.upper()).next_up() * left.next_up();
-        Enclosure::new(down.next_down().max(0.0), up.next_up()).unwrap_or(Enclosure::UNKNOWN)
-    }
-
-    /// n + (1 − Pa)·(N − n), rounded outwards.
+    /// N·(1 − S), rounded outwards.
     fn inspected(&self, at: &Value) -> Enclosure {
-        let sorted = self.released(at).complement();
-        let rest = self.lot - self.sample;
-        Enclosure::new(
-            (self.sample + (sorted.lower() * rest).next_down()).next_down(),
-            (self.sample + (sorted.upper() * rest).next_up()).next_up(),
-        )
-        .unwrap_or(Enclosure::UNKNOWN)
+        times(self.unseen(at).complement(), self.lot)
     }
 
     /// The supremum of the average outgoing quality and where it is approached.
@@ -127,8 +115,8 @@ impl Sorting<'_, '_> {
             if at_high.lower() > best.0 {
                 *best = (at_high.lower(), high.clone());
             }
-            let released = self.released(&Value::Finite(low.clone()));
-            let bound = self.mixed(&Value::Finite(high.clone()), released).upper();
+            let unseen = self.unseen(&Value::Finite(low.clone()));
+            let bound = times(unseen, high.to_f64()).upper();
             (bound, low, high)
         };
         let first = push(low.clone(), high.clone(), &mut best);
@@ -149,6 +137,13 @@ impl Sorting<'_, '_> {
         let limit = Enclosure::new(best.0, upper.max(best.0))?;
         Some((limit, Value::Finite(best.1)))
     }
+}
+
+/// An enclosure times a number that is itself the nearest double to what is meant.
+fn times(enclosure: Enclosure, factor: f64) -> Enclosure {
+    let down = (enclosure.lower() * factor.next_down()).next_down();
+    let up = (enclosure.upper() * factor.next_up()).next_up();
+    Enclosure::new(down.max(0.0), up).unwrap_or(Enclosure::UNKNOWN)
 }
 
 /// A stretch of quality with an upper bound on the outgoing quality over it.

@@ -3,6 +3,7 @@
 use crate::kernel::enclosure::Enclosure;
 use crate::kernel::exact::Exact;
 use crate::kernel::region::Region;
+use crate::language::plan::AcceptWhen;
 use crate::space::{LineSet, Value};
 
 use super::extremum::{Extremum, Goal, extremum};
@@ -87,6 +88,23 @@ impl<'a> Rule<'a> {
         match &self.kind {
             Kind::Single(region) => self.operating.retention(region, observed),
             Kind::Staged(rule) => rule.retention(self.operating.problem, observed),
+        }
+    }
+
+    /// Probability that the lot is released after each amount of inspection, at an observed value.
+    pub fn released_after(&self, observed: &Value) -> Vec<(f64, Enclosure)> {
+        let problem = self.operating.problem;
+        let by_rejection = problem.accept_when == AcceptWhen::NullRejected;
+        match &self.kind {
+            Kind::Staged(rule) => rule.released_after(problem, observed, by_rejection),
+            Kind::Single(_) => {
+                let released = if by_rejection {
+                    self.rejection(observed)
+                } else {
+                    self.retention(observed)
+                };
+                vec![(self.operating.amount.to_f64(), released)]
+            }
         }
     }
 

@@ -198,6 +198,28 @@ impl StagedRule {
         }
     }
 
+    /// Probability that the lot is released after each stage, which rejecting or retaining the null does.
+    pub fn released_after(
+        &self,
+        problem: &Problem,
+        observed: &Value,
+        by_rejection: bool,
+    ) -> Vec<(f64, Enclosure)> {
+        let released = |index: usize, stage: &Weighted| {
+            let region = if by_rejection {
+                &stage.reject
+            } else {
+                &stage.retain
+            };
+            self.ended(problem, index, region, observed)
+        };
+        self.stages
+            .iter()
+            .enumerate()
+            .map(|(index, stage)| (stage.amount.to_f64(), released(index, stage)))
+            .collect()
+    }
+
     /// Expected amount of inspection at an observed value.
     pub fn expected_amount(&self, problem: &Problem, observed: &Value) -> Enclosure {
         let mut sum = Enclosure::ZERO;
