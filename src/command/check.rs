@@ -44,7 +44,8 @@ Examples:
 
 Exit status:
   0  no error; cautions may have been printed
-  1  a requirement is not met or a given region exceeds the level; with --strict also: a caution of grade E or W is left
+  1  a requirement is not met, or a given region exceeds the level;
+     with --strict also: a caution of grade E or W is left
   2  a plan with an error, or a file that cannot be read
   3  internal error";
 

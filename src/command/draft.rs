@@ -130,7 +130,8 @@ mod tests {
     use super::*;
     use crate::{Silent, compile};
 
-    /// A draft is what a newcomer sees first: it has neither an error nor an unmet requirement.
+    /// A draft is what a newcomer sees first: it has neither an error nor an unmet requirement, nor anything that an
+    /// auditor would object to.
     #[test]
     fn every_draft_compiles() {
         for draft in DRAFTS {
@@ -139,6 +140,8 @@ mod tests {
                 .record
                 .unwrap_or_else(|| panic!("{}: {:#?}", draft.kind, compiled.diagnostics));
             assert_eq!(Status::of(&record), Status::Fine, "{}", draft.kind);
+            let grave = record.cautions.iter().find(|caution| caution.grade == "E");
+            assert!(grave.is_none(), "{}: {grave:?}", draft.kind);
         }
     }
 

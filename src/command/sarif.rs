@@ -1,5 +1,6 @@
 //! Findings in the Static Analysis Results Interchange Format (OASIS, SARIF 2.1.0), which code-review tools read.
 
+use std::collections::BTreeSet;
 use std::path::{Component, Path};
 
 use serde_json::{Value, json};
@@ -7,6 +8,7 @@ use serde_json::{Value, json};
 use crate::language::codes::CODES;
 use crate::language::diagnostic::{CautionGrade, Diagnostic, Grade};
 use crate::language::source::Source;
+use crate::rule::RULES;
 
 use super::check::Checked;
 use super::status::Status;
@@ -41,8 +43,20 @@ pub fn log(files: &[Checked], status: Status) -> String {
     format!("{log:#}\n")
 }
 
-fn rules() -> Vec<Value> {
+/// Codes and their meanings, each once: those of the language, then those of the rules on plans.
+fn codes() -> Vec<(&'static str, &'static str)> {
+    let of_rules = RULES.iter().map(|rule| (rule.code, rule.title));
+    let mut listed = BTreeSet::new();
     CODES
+        .iter()
+        .copied()
+        .chain(of_rules)
+        .filter(|(code, _)| listed.insert(*code))
+        .collect()
+}
+
+fn rules() -> Vec<Value> {
+    codes()
         .iter()
         .map(|(code, meaning)| json!({"id": code, "shortDescription": {"text": meaning}}))
         .collect()
@@ -71,7 +85,7 @@ fn result(found: &Diagnostic, path: &Path, source: &Source) -> Value {
         }}],
     });
     if let (Some(index), Some(fields)) = (
-        CODES.iter().position(|(code, _)| *code == found.code),
+        codes().iter().position(|(code, _)| *code == found.code),
         result.as_object_mut(),
     ) {
         fields.insert("ruleIndex".to_owned(), json!(index));
@@ -181,6 +195,14 @@ mod tests {
         let index = usize::try_from(result["ruleIndex"].as_u64().unwrap()).unwrap();
         assert_eq!(run["tool"]["driver"]["rules"][index]["id"], "unknown-key");
         assert_eq!(run["invocations"][0]["exitCode"], 2);
+    }
+
+    #[test]
+    fn every_code_is_described_once() {
+        let codes = codes();
+        let distinct: BTreeSet<_> = codes.iter().map(|(code, _)| code).collect();
+        assert_eq!(distinct.len(), codes.len());
+        assert!(RULES.iter().all(|rule| distinct.contains(&rule.code)));
     }
 
     #[test]

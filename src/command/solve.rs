@@ -35,7 +35,7 @@ Examples:
 
 Exit status:
   0  every requirement is met
-  1  a requirement is not met, or the size of a given region is above the level
+  1  a requirement is not met, or a given region exceeds the level
   2  the plan has an error or cannot be read
   3  internal error";
 

@@ -46,15 +46,15 @@ pub struct Arguments {
 
 const EXAMPLES: &str = "\
 Examples:
-  assize compile plans                            all plans of a folder, reports in the folder `reports`
-  assize compile plans/VP-0031.yaml --out filed
+  assize compile plans                             every plan of a folder, into `reports`
+  assize compile plans/VP-0031.yaml --out filed    one plan, into `filed`
   cd filed && sha256sum --check SHA256SUMS
 
 Exit status, the worst of all plans:
   0  every plan is filed and every requirement is met
-  1  a requirement is not met, or the size of a given region is above the level (the report is filed and says so)
-  2  a plan has an error, cannot be read, or is refused; or the folder cannot be written
-  3  internal error: two computations of one figure disagree; nothing was filed for that plan";
+  1  a requirement is not met, or a given region exceeds the level; the report says so
+  2  a plan has an error, cannot be read or is refused; or the folder cannot be written
+  3  internal error: two computations of one figure disagree; nothing is filed for that plan";
 
 pub fn run(arguments: &Arguments) -> Status {
     let gathered = file_text::gather(&arguments.plans);
