@@ -75,14 +75,54 @@ fn of_waiting_law(
                 &law.count_in(range.from - 1),
                 &Region::at_most(law.target.checked_sub(1)),
             ),
-            (false, Some(to)) => probability(
-                &Law::Ratios(law.ratios.clone()),
-                &Region::between(range.from, to),
-            ),
+            (false, Some(to)) => between(law, range.from, to, probability),
         };
         sum = sum.plus(part);
     }
     sum.as_probability()
+}
+
+/// A range between the tails: a single outcome by P(N = m) = (r/m)·P(Binomial(m, p) = r), more as a difference of tails
+/// where it keeps enough digits, else by the law's own ratios, which may be many steps.
+fn between(
+    law: &WaitingLaw,
+    from: u64,
+    to: u64,
+    probability: &dyn Fn(&Law, &Region) -> Enclosure,
+) -> Enclosure {
+    let counted = |units: u64, event: &Region| probability(&law.count_in(units), event);
+    if from == to {
+        let term = counted(from, &Region::between(law.target, law.target));
+        let share = law.target as f64 / from as f64;
+        let (lower, upper) = (
+            (term.lower() * share.next_down()).next_down(),
+            (term.upper() * share.next_up()).next_up(),
+        );
+        return Enclosure::new(lower.max(0.0), upper.min(1.0)).unwrap_or(Enclosure::UNKNOWN);
+    }
+    let (enough, few) = (
+        Region::at_least(Some(law.target)),
+        Region::at_most(law.target.checked_sub(1)),
+    );
+    let by_lower = difference(counted(to, &enough), counted(from - 1, &enough));
+    let by_upper = difference(counted(from - 1, &few), counted(to, &few));
+    let better = if by_lower.relative_width() < by_upper.relative_width() {
+        by_lower
+    } else {
+        by_upper
+    };
+    if better.relative_width() <= WIDEST_IN_DOUBLES {
+        return better;
+    }
+    probability(&Law::Ratios(law.ratios.clone()), &Region::between(from, to))
+}
+
+fn difference(larger: Enclosure, smaller: Enclosure) -> Enclosure {
+    Enclosure::new(
+        (larger.lower() - smaller.upper()).next_down().max(0.0),
+        (larger.upper() - smaller.lower()).next_up().max(0.0),
+    )
+    .unwrap_or(Enclosure::UNKNOWN)
 }
 
 fn certain(holds: bool) -> Enclosure {

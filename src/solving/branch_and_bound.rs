@@ -15,7 +15,7 @@ use super::operating::Operating;
 /// Width at which the search stops, relative to the value.
 const PRECISE: f64 = 1e-12;
 /// Most stretches looked at before the enclosure reached so far is returned, wide but true.
-const MOST_STRETCHES: usize = 40_000;
+const MOST_STRETCHES: usize = 4_000;
 
 /// A stretch of the parameter with an upper bound on the probability over it.
 struct Stretch {

@@ -32,30 +32,22 @@ impl DoubleEntry {
     /// Computes every figure of a solution again.
     pub fn of(rule: &Rule<'_>, solution: &Solution) -> Self {
         let mut entry = Self::default();
-        let problem = rule.operating.problem;
-        let observed = |at: &Value, value: Enclosure| {
-            // Of the images of a point, the one the figure was computed at.
-            let (least, most) = problem.observation.images(at);
-            let distance = |image: &Value| (rule.rejection(image).middle() - value.middle()).abs();
-            if distance(&most) < distance(&least) {
-                most
-            } else {
-                least
-            }
-        };
-        for placed in std::iter::once(&solution.size).chain(
+        let retained_matters = rule.operating.problem.accept_when == AcceptWhen::NullRetained;
+        // An extremum's enclosure also holds what branch and bound left open: the figure at its place is compared.
+        let extrema = std::iter::once(&solution.size).chain(
             solution
                 .requirements
                 .iter()
                 .map(|outcome| &outcome.attained),
-        ) {
-            entry.rejection(rule, &observed(&placed.at, placed.value), placed.value);
+        );
+        for placed in extrema {
+            let there = rule.rejection(&placed.observed);
+            entry.rejection(rule, &placed.observed, there);
         }
         for point in &solution.power {
-            let image = observed(&point.at, point.rejection);
-            entry.rejection(rule, &image, point.rejection);
-            if problem.accept_when == AcceptWhen::NullRetained {
-                entry.retention(rule, &image, point.retention);
+            entry.rejection(rule, &point.observed, point.rejection);
+            if retained_matters {
+                entry.retention(rule, &point.observed, point.retention);
             }
         }
         entry

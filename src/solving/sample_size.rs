@@ -33,8 +33,12 @@ pub struct Search {
 const BY_CHERNOFF: &str = "every amount up to a bound of Chernoff's was checked; beyond it the bound, computed with libm's logarithm and enlarged by a thousandth, proves it";
 const BY_WHOLE_LOT: &str = "every sample size up to the whole lot was checked";
 const BY_MONOTONICITY: &str = "the size of the region falls as the amount grows";
+const BY_SMALLEST_TAIL: &str =
+    "the smallest tail becomes less probable as the amount grows, so a region remains";
 const BY_TRIAL: &str = "every amount up to the stated one was checked";
 
+/// Most thresholds judged.
+const MOST_SEGMENTS: u32 = 200_000;
 /// Most amounts tried one by one.
 const MOST_TRIALS: u64 = 100_000;
 /// Most amounts tried beyond the first that will do.
@@ -212,6 +216,9 @@ impl<'a> Amounts<'a> {
     /// One-sided nulls: for a fixed threshold size and power are monotone in the amount, so whole segments of amounts are
     /// judged at once.
     fn by_threshold(&self, end: &Value, lower: bool) -> Result<Search, Obstacle> {
+        if self.problem.requirements.is_empty() {
+            return self.first_region();
+        }
         let thresholds = Thresholds::new(self, end, lower);
         let bound = thresholds.bound(self);
         let limit = bound.map_or(self.most, |bound| bound.min(self.most));
@@ -219,7 +226,12 @@ impl<'a> Amounts<'a> {
         let mut every_from = 1;
         let mut segment = thresholds.first_segment()?;
         let mut threshold = thresholds.first_threshold();
+        let mut judged = 0;
         while segment.from <= limit {
+            judged += 1;
+            if judged > MOST_SEGMENTS {
+                return Err(self.exhausted(segment.from));
+            }
             self.tell("sample sizes judged", segment.from, Some(limit))?;
             match segment.will_do {
                 Some((from, to)) => {
@@ -233,9 +245,6 @@ impl<'a> Amounts<'a> {
                 }
                 None if segment.from <= segment.to => every_from = segment.to + 1,
                 None => {}
-            }
-            if first.is_some() && self.problem.requirements.is_empty() {
-                break;
             }
             if segment.to >= self.most {
                 break;
@@ -257,6 +266,19 @@ impl<'a> Amounts<'a> {
             None => BY_WHOLE_LOT,
         };
         self.found(first, every_from, None, how)
+    }
+
+    /// One-sided nulls without requirements: the smallest tail there is becomes less probable as the amount grows, so the
+    /// first amount with a region is found by bisection.
+    fn first_region(&self) -> Result<Search, Obstacle> {
+        let too_early = last_true(1, 1, self.most, |index| {
+            derive(&self.at(index)).map(|region| region.is_empty())
+        })?;
+        let first = too_early.map_or(1, |index| index + 1);
+        if first > self.most {
+            return Err(self.exhausted(self.most));
+        }
+        self.found(first, first, None, BY_SMALLEST_TAIL)
     }
 
     /// All other nulls: from the first amount at which the envelope leaves hope, one by one.

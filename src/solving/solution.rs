@@ -75,6 +75,8 @@ pub struct Placed {
     pub value: Enclosure,
     /// Where it is attained or approached.
     pub at: Value,
+    /// What inspection sees there.
+    pub observed: Value,
     /// Whether the set holds that value.
     pub attained: bool,
     /// Why it is there.
@@ -86,6 +88,8 @@ pub struct Placed {
 pub struct PowerPoint {
     /// The true parameter value.
     pub at: Value,
+    /// What inspection sees there; of several images the one that counts.
+    pub observed: Value,
     /// Whether the null holds there.
     pub in_null: bool,
     /// Probability that the null is rejected: at its largest where the null holds, else at its smallest, over what
@@ -208,6 +212,7 @@ fn placed(problem: &Problem, found: Extremum, declared: &LineSet) -> Placed {
             how => how.to_owned(),
         },
         at,
+        observed: found.at,
     }
 }
 
@@ -245,6 +250,7 @@ fn power_at(rule: &Rule<'_>, at: Value) -> Result<PowerPoint, Obstacle> {
         expected_amount: rule.expected_amount(&observed),
         envelope: envelope(&rule.operating, &at)?,
         at,
+        observed,
     })
 }
 
