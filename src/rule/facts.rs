@@ -5,7 +5,7 @@ use crate::kernel::exact::Exact;
 use crate::kernel::region::Region;
 use crate::language::plan::{AcceptWhen, Plan};
 use crate::problem::{AmountRequest, Observation, Problem, Shape};
-use crate::solving::{Silent, Solution, solve};
+use crate::solving::{Form, Silent, Solution, form_of, solve};
 use crate::space::Value;
 
 use super::conduct::judged_by_people;
@@ -185,7 +185,9 @@ fn next_fails(problem: &Problem, solution: &Solution) -> Option<Exact> {
 
 fn smaller_that_does(problem: &Problem, solution: &Solution) -> Option<Exact> {
     let unmet = solution.requirements.iter().any(|each| !each.met);
-    let derived = problem.given_region.is_none() && problem.stages.is_empty();
+    // Other shapes are searched amount by amount: too long for a remark.
+    let one_sided = matches!(problem.shape, Shape::Below { .. } | Shape::Above { .. });
+    let derived = one_sided && problem.given_region.is_none() && problem.stages.is_empty();
     if !unmet || !derived || !matches!(problem.amount, AmountRequest::Given(_)) {
         return None;
     }
@@ -196,8 +198,9 @@ fn smaller_that_does(problem: &Problem, solution: &Solution) -> Option<Exact> {
 fn region_keeps_level_from(problem: &Problem, solution: &Solution) -> Option<Exact> {
     let region = problem.given_region.as_ref()?;
     let counts_units = problem.family.registration().amount_kind == AmountKind::Units;
-    // More units only make a region of large counts likelier.
-    if solution.within_level || region.is_unbounded() || !counts_units {
+    // More units only make a region of large counts likelier, and other regions are searched amount by amount.
+    let falls = form_of(region, (0, None)) == Form::LowerTail;
+    if solution.within_level || !falls || !counts_units {
         return None;
     }
     let mut level_only = neighbour(problem);

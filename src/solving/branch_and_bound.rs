@@ -4,12 +4,14 @@
 //! by an enclosure of its slope. The second closes in with the square of the width, so that a supremum inside is found to
 //! full precision in a few dozen steps. On lattices stretches end as single values.
 
+use std::cmp::Ordering;
 use std::collections::BinaryHeap;
 
 use crate::kernel::enclosure::Enclosure;
 use crate::kernel::region::Region;
 use crate::space::{Interval, Value};
 
+use super::judgement::Level;
 use super::operating::Operating;
 
 /// Width at which the search stops, relative to the value.
@@ -33,12 +35,12 @@ impl PartialEq for Stretch {
 }
 impl Eq for Stretch {}
 impl PartialOrd for Stretch {
-    fn partial_cmp(&self, other: &Self) -> Option<std::cmp::Ordering> {
+    fn partial_cmp(&self, other: &Self) -> Option<Ordering> {
         Some(self.cmp(other))
     }
 }
 impl Ord for Stretch {
-    fn cmp(&self, other: &Self) -> std::cmp::Ordering {
+    fn cmp(&self, other: &Self) -> Ordering {
         self.bound
             .total_cmp(&other.bound)
             .then_with(|| other.low.cmp(&self.low))
@@ -46,11 +48,13 @@ impl Ord for Stretch {
 }
 
 /// The supremum of a region's probability over an interval: its enclosure, where it is approached, and whether that is
-/// the interval's lower end or inside (rather than its upper end).
+/// the interval's lower end or inside (rather than its upper end). With a level to compare with, the search stops once
+/// the comparison is settled, and the enclosure may be wide.
 pub fn supremum(
     operating: &Operating<'_>,
     region: &Region,
     piece: &Interval,
+    against: Option<&Level>,
 ) -> (Enclosure, Value, bool) {
     let (low, high) = (piece.low().at.clone(), piece.high().at.clone());
     let (at_low, at_high) = (
@@ -58,6 +62,8 @@ pub fn supremum(
         operating.single(region, &high),
     );
     let mut lower = at_low.lower().max(at_high.lower());
+    // No bound can be better than the enclosures of the points themselves.
+    let mut attained = at_low.upper().max(at_high.upper());
     let mut place = if at_low.lower() >= at_high.lower() {
         (low.clone(), true)
     } else {
@@ -65,12 +71,16 @@ pub fn supremum(
     };
     let mut stretches = BinaryHeap::new();
     stretches.push(bounded(operating, region, low, high, at_low, at_high));
-    let mut settled = lower;
+    let mut settled = attained;
     for _ in 0..MOST_STRETCHES {
         let Some(worst) = stretches.pop() else {
             break;
         };
-        if worst.bound <= lower * (1.0 + PRECISE) {
+        let settles = against.is_some_and(|level| {
+            let is = |value: f64| level.against(Enclosure::exactly(value));
+            is(worst.bound) == Some(Ordering::Less) || is(lower) == Some(Ordering::Greater)
+        });
+        if settles || worst.bound <= attained.max(lower * (1.0 + PRECISE)) {
             settled = settled.max(worst.bound);
             break;
         }
@@ -80,6 +90,7 @@ pub fn supremum(
             continue;
         };
         let at_middle = operating.single(region, &middle);
+        attained = attained.max(at_middle.upper());
         if at_middle.lower() > lower {
             lower = at_middle.lower();
             place = (middle.clone(), true);
@@ -105,7 +116,9 @@ pub fn supremum(
     }
     let upper = stretches
         .peek()
-        .map_or(settled, |worst| worst.bound.max(settled))
+        .map_or(settled.max(attained), |worst| {
+            worst.bound.max(settled).max(attained)
+        })
         .clamp(lower, 1.0);
     let value = Enclosure::new(lower, upper).unwrap_or(Enclosure::UNKNOWN);
     (value, place.0, place.1)

@@ -6,7 +6,7 @@ use crate::kernel::region::Region;
 use crate::space::{Interval, LineSet, Value};
 
 use super::branch_and_bound::supremum;
-use super::judgement::over_tries;
+use super::judgement::{Level, over_tries};
 use super::operating::Operating;
 use super::region::{Form, form_of};
 
@@ -44,10 +44,33 @@ const BY_BRANCH_AND_BOUND: &str =
 
 /// The extremum of the rejection probability of a region over a non-empty set of observed values (its closure).
 pub fn extremum(operating: &Operating<'_>, region: &Region, set: &LineSet, goal: Goal) -> Extremum {
+    over_pieces(operating, region, set, goal, None)
+}
+
+/// The supremum over a set as far as it takes to compare it with a level: once that is settled, its enclosure may be
+/// wide.
+pub fn supremum_against(
+    operating: &Operating<'_>,
+    region: &Region,
+    set: &LineSet,
+    level: &Level,
+) -> Extremum {
+    // With several tries the level of one try is not the level of all.
+    let level = (operating.problem.tries == 1).then_some(level);
+    over_pieces(operating, region, set, Goal::Supremum, level)
+}
+
+fn over_pieces(
+    operating: &Operating<'_>,
+    region: &Region,
+    set: &LineSet,
+    goal: Goal,
+    against: Option<&Level>,
+) -> Extremum {
     let form = form_of(region, operating.outcomes());
     let mut best: Option<Extremum> = None;
     for piece in set.pieces() {
-        let found = over_piece(operating, region, form, piece, goal);
+        let found = over_piece(operating, region, form, piece, (goal, against));
         let better = best.as_ref().is_none_or(|best| match goal {
             Goal::Supremum => found.value.middle() > best.value.middle(),
             Goal::Infimum => found.value.middle() < best.value.middle(),
@@ -88,7 +111,7 @@ fn over_piece(
     region: &Region,
     form: Form,
     piece: &Interval,
-    goal: Goal,
+    (goal, against): (Goal, Option<&Level>),
 ) -> Extremum {
     let at_end = |lower: bool, how: &'static str| {
         let end = if lower { piece.low() } else { piece.high() };
@@ -127,10 +150,10 @@ fn over_piece(
         (Form::Inner, _) | (Form::TwoTails, _) => {
             match end_towards_peak(operating, region, form, piece) {
                 Some(lower) => at_end(lower, BY_PEAK_OUTSIDE),
-                None => by_branch_and_bound(operating, region, piece, goal),
+                None => by_branch_and_bound(operating, region, piece, (goal, against)),
             }
         }
-        (Form::Scattered, _) => by_branch_and_bound(operating, region, piece, goal),
+        (Form::Scattered, _) => by_branch_and_bound(operating, region, piece, (goal, against)),
     }
 }
 
@@ -172,12 +195,13 @@ fn by_branch_and_bound(
     operating: &Operating<'_>,
     region: &Region,
     piece: &Interval,
-    goal: Goal,
+    (goal, against): (Goal, Option<&Level>),
 ) -> Extremum {
     let (value, at, at_lower_end) = match goal {
-        Goal::Supremum => supremum(operating, region, piece),
+        Goal::Supremum => supremum(operating, region, piece, against),
         Goal::Infimum => {
-            let (value, at, at_lower_end) = supremum(operating, &region.complement(), piece);
+            let complement = region.complement();
+            let (value, at, at_lower_end) = supremum(operating, &complement, piece, None);
             (value.complement(), at, at_lower_end)
         }
     };

@@ -4,7 +4,7 @@
 use crate::kernel::region::{Range, Region};
 use crate::space::{LineSet, Value};
 
-use super::extremum::{Goal, extremum};
+use super::extremum::supremum_against;
 use super::judgement::Level;
 use super::obstacle::Obstacle;
 use super::operating::Operating;
@@ -67,7 +67,7 @@ fn within(
     if region.is_empty() {
         return Ok(true);
     }
-    let size = extremum(operating, region, null, Goal::Supremum);
+    let size = supremum_against(operating, region, null, alpha);
     if let Some(order) = alpha.against(size.value) {
         return Ok(order != std::cmp::Ordering::Greater);
     }
