@@ -200,6 +200,12 @@ fn in_words(obstacle: &Obstacle, problem: &Problem) -> Diagnostic {
             "every bounded region fits this null, and none is largest".to_owned(),
         )
         .with_help("state the region with `critical_region`"),
+        Obstacle::SampleBeyondLot { amount, lot } => at(
+            "sample-larger-than-lot",
+            problem.amount_span,
+            format!("inspection takes up to {amount} units, and a lot has {lot}"),
+        )
+        .with_help("sort larger lots, or inspect fewer units"),
         Obstacle::NoRectification => at(
             "not-yet-derived",
             problem.region_span,

@@ -292,6 +292,16 @@ fn rectification(
     let Some(lot) = &test.rectification_lot_size else {
         return;
     };
+    if test.retest_times.is_some() {
+        problems.push(
+            Diagnostic::error(
+                "not-yet-derived",
+                lot.span,
+                "sorting of lots that may be tried again is not derived yet",
+            )
+            .with_help("leave out `retest` or `rectification`; a further try is a further stage"),
+        );
+    }
     let counts_units = family.registration().amount_kind == AmountKind::Units;
     if !counts_units || family.lattice().is_some() || *observation != Observation::Perfect {
         problems.push(

@@ -35,7 +35,7 @@ pub fn build(plan: &Plan, problem: &Problem, solution: &Solution) -> Record {
         characteristic: characteristic(plan),
         problem: statement(problem),
         design: design(problem, solution),
-        critical_region: critical_region(problem, solution),
+        critical_region: critical_region(plan, problem, solution),
         optimality: Optimality {
             claim: solution.optimality.claim.to_owned(),
             theorem: solution.optimality.theorem.clone(),
@@ -172,7 +172,7 @@ fn limit(problem: &Problem, stage: &SolvedStage, region: &Region) -> Option<Coun
     ranges(&cut).first().copied()
 }
 
-fn critical_region(problem: &Problem, solution: &Solution) -> CriticalRegion {
+fn critical_region(plan: &Plan, problem: &Problem, solution: &Solution) -> CriticalRegion {
     let statistic = problem.family.registration().statistic;
     let outcomes = solution.outcomes;
     let retained = solution.region.complement();
@@ -186,7 +186,7 @@ fn critical_region(problem: &Problem, solution: &Solution) -> CriticalRegion {
         (staged(|stage| &stage.reject), staged(|stage| &stage.retain))
     };
     let given = problem.given_region.is_some()
-        || (!problem.stages.is_empty()
+        || (!plan.test.stages.is_empty()
             && problem.stages.iter().all(|stage| stage.reject.is_some()));
     CriticalRegion {
         statistic: statistic.to_owned(),

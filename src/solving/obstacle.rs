@@ -32,6 +32,13 @@ pub enum Obstacle {
     },
     /// The region would have no largest count.
     NoLargestRegion,
+    /// The sample is larger than the lots that are to be sorted.
+    SampleBeyondLot {
+        /// The amount of inspection.
+        amount: Exact,
+        /// Units in a lot.
+        lot: u64,
+    },
     /// Sorting of lots is derived only where lots are released at small counts.
     NoRectification,
     /// The caller asked to stop.

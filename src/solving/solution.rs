@@ -132,6 +132,11 @@ pub fn solve(problem: &Problem, progress: &dyn Progress) -> Result<Solution, Obs
             (search.smallest.clone(), Some(search))
         }
     };
+    if let Some(lot) = problem.rectified_lot
+        && amount > Exact::from(lot)
+    {
+        return Err(Obstacle::SampleBeyondLot { amount, lot });
+    }
     let operating = Operating::new(problem, amount);
     let rule = if problem.stages.is_empty() {
         let outcomes = operating.outcomes();
