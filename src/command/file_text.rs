@@ -44,9 +44,14 @@ impl Unread {
     }
 }
 
+/// Whether a path stands for standard input.
+pub fn is_standard_input(path: &Path) -> bool {
+    path == Path::new(STANDARD_INPUT)
+}
+
 /// A path as it is shown.
 pub fn shown(path: &Path) -> String {
-    if path == Path::new(STANDARD_INPUT) {
+    if is_standard_input(path) {
         return "standard input".to_owned();
     }
     harmless(&path.to_string_lossy())
@@ -54,7 +59,7 @@ pub fn shown(path: &Path) -> String {
 
 /// The text of a plan; `-` reads standard input.
 pub fn read(path: &Path) -> Result<String, Unread> {
-    let bytes = if path == Path::new(STANDARD_INPUT) {
+    let bytes = if is_standard_input(path) {
         limited(io::stdin().lock())
     } else {
         // Asked before opening: opening a pipe would wait for a writer.
@@ -145,7 +150,7 @@ pub fn gather(asked: &[PathBuf]) -> Gathered {
     let mut paths = Vec::new();
     let mut troubles = Vec::new();
     for path in asked {
-        let is_folder = path != Path::new(STANDARD_INPUT) && path.is_dir();
+        let is_folder = !is_standard_input(path) && path.is_dir();
         if !is_folder {
             paths.push(path.clone());
             continue;

@@ -57,6 +57,15 @@ Exit status, the worst of all plans:
   3  internal error: two computations of one figure disagree; nothing is filed for that plan";
 
 pub fn run(arguments: &Arguments) -> Status {
+    // A report names the hash of a file that an auditor can be shown.
+    if arguments
+        .plans
+        .iter()
+        .any(|plan| file_text::is_standard_input(plan))
+    {
+        terminal::complain("`compile` takes files and folders, not standard input");
+        return Status::BadInput;
+    }
     let gathered = file_text::gather(&arguments.plans);
     gathered.tell();
     let mut status = gathered.status();
