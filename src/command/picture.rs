@@ -30,6 +30,7 @@ pub fn of(record: &Record, width: usize) -> String {
     }
     out.push('\n');
     facts(&mut out, &glance, width);
+    stages(&mut out, &glance);
     requirements(&mut out, &glance, width);
     power(&mut out, &glance, width);
     out
@@ -49,6 +50,19 @@ fn facts(out: &mut String, glance: &Glance, width: usize) {
             let padded = format!("{label:<column$}");
             let _ = writeln!(out, "{}  {line}", styled(&padded, DIM));
         }
+    }
+}
+
+/// The table of limits that the rule of a staged design refers to.
+fn stages(out: &mut String, glance: &Glance) {
+    if glance.stages.is_empty() {
+        return;
+    }
+    let headings = ["inspected", "accept at", "refuse at"].map(str::to_owned);
+    let widths = widths_of(&headings, glance.stages.iter().map(<[String; 3]>::as_slice));
+    let _ = writeln!(out, "\n{}", styled(&line_of(&headings, &widths), BOLD));
+    for row in &glance.stages {
+        let _ = writeln!(out, "{}", line_of(row, &widths));
     }
 }
 
@@ -80,7 +94,8 @@ fn requirements(out: &mut String, glance: &Glance, width: usize) {
 }
 
 fn power(out: &mut String, glance: &Glance, width: usize) {
-    let widths = column_widths(glance);
+    let rows = glance.rows.iter().map(|row| row.cells.as_slice());
+    let widths = widths_of(&glance.columns, rows);
     let taken: usize = widths.iter().map(|width| width + 2).sum();
     let bar = Some(width.saturating_sub(taken).min(WIDEST_BAR)).filter(|bar| *bar >= NARROWEST_BAR);
     let heading = line_of(&glance.columns, &widths);
@@ -97,21 +112,16 @@ fn power(out: &mut String, glance: &Glance, width: usize) {
     }
 }
 
-fn column_widths(glance: &Glance) -> Vec<usize> {
+/// How wide each column must be.
+fn widths_of<'a>(headings: &[String], rows: impl Iterator<Item = &'a [String]>) -> Vec<usize> {
     let columns = |text: &String| text.chars().count();
-    glance
-        .columns
-        .iter()
-        .enumerate()
-        .map(|(at, heading)| {
-            let cells = glance.rows.iter().filter_map(|row| row.cells.get(at));
-            cells
-                .map(columns)
-                .max()
-                .unwrap_or_default()
-                .max(columns(heading))
-        })
-        .collect()
+    let mut widths: Vec<usize> = headings.iter().map(columns).collect();
+    for row in rows {
+        for (width, cell) in widths.iter_mut().zip(row) {
+            *width = columns(cell).max(*width);
+        }
+    }
+    widths
 }
 
 fn line_of(cells: &[String], widths: &[usize]) -> String {

@@ -4,13 +4,13 @@ use std::cmp::Ordering;
 
 use pulldown_cmark::{Event, Parser};
 
-use crate::record::{Design, Record, RequirementResult};
+use crate::record::{Design, Record, RequirementResult, Stage};
 
 use super::page::status_word;
 use super::power_table;
 use super::words::quantity::amount_text;
 use super::words::subject::{Subject, coordinate};
-use super::words::{claim, rule, sample};
+use super::words::{claim, rule, sample, stages};
 
 /// The essence of a record as plain text.
 #[derive(Clone, Debug)]
@@ -23,6 +23,8 @@ pub struct Glance {
     pub requirements: Vec<(String, bool)>,
     /// `Proved`, or what stands against it.
     pub status: &'static str,
+    /// The limits of a staged design: inspected so far, accept at, refuse at.
+    pub stages: Vec<[String; 3]>,
     /// Headings of the power table.
     pub columns: Vec<String>,
     /// Rows of the power table.
@@ -60,6 +62,10 @@ pub fn glance(record: &Record) -> Glance {
             })
             .collect(),
         status: status_word(record),
+        stages: stages::rows(record)
+            .into_iter()
+            .map(|row| [row.inspected, row.accept, row.refuse].map(|cell| plain(&cell)))
+            .collect(),
         columns: columns(record),
         rows: rows(record, &subject),
     }
@@ -105,12 +111,18 @@ fn sample_of(design: &Design) -> String {
     match (design.stop_at_nonconforming, design.sample_size) {
         (Some(stop), _) => format!("until {stop}"),
         (None, Some(size)) => amount_text(size),
-        (None, None) => design
-            .stages
-            .iter()
-            .map(|stage| amount_text(stage.cumulative_size))
-            .collect::<Vec<_>>()
-            .join("/"),
+        (None, None) => stages_of(&design.stages),
+    }
+}
+
+/// The units inspected when each stage is complete: `99/198`; of many stages only the last.
+fn stages_of(stages: &[Stage]) -> String {
+    let sizes = stages
+        .iter()
+        .map(|stage| amount_text(stage.cumulative_size));
+    match stages {
+        [_, _, _, _, .., last] => format!("up to {}", amount_text(last.cumulative_size)),
+        _ => sizes.collect::<Vec<_>>().join("/"),
     }
 }
 
@@ -214,7 +226,7 @@ fn plain(markdown: &str) -> String {
 #[cfg(test)]
 mod tests {
     use super::*;
-    use crate::record::fixture;
+    use crate::record::{Amount, fixture};
 
     #[test]
     fn markup_is_taken_away_and_text_is_kept() {
@@ -222,6 +234,20 @@ mod tests {
         assert_eq!(plain("0 <= p <= 1"), "0 <= p <= 1");
         assert_eq!(plain("- one"), "- one");
         assert_eq!(plain("1. one"), "1. one");
+    }
+
+    #[test]
+    fn few_stages_are_listed_and_many_are_summed_up() {
+        let stages = |number: u64| {
+            let stage = |at| Stage {
+                cumulative_size: Amount::Count(50 * at),
+                retain_null: None,
+                reject_null: None,
+            };
+            stages_of(&(1..=number).map(stage).collect::<Vec<_>>())
+        };
+        assert_eq!(stages(2), "50/100");
+        assert_eq!(stages(9), "up to 450");
     }
 
     #[test]

@@ -20,7 +20,7 @@ const HEADINGS: [&str; 7] = [
     "status",
 ];
 /// No cell is wider, but for the last.
-const WIDEST_CELL: usize = 40;
+const WIDEST_CELL: usize = 36;
 
 /// The table of a run, and a line that counts.
 pub fn table(outcomes: &[Outcome], folder: &Path) -> String {

@@ -20,9 +20,12 @@ struct Run {
 /// One row of the table of limits.
 #[derive(Serialize)]
 pub struct StageRow {
-    inspected: String,
-    accept: String,
-    refuse: String,
+    /// Units inspected so far.
+    pub inspected: String,
+    /// Counts at which the lot is accepted.
+    pub accept: String,
+    /// Counts at which it is not.
+    pub refuse: String,
     go_on: String,
 }
 
