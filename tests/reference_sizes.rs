@@ -10,15 +10,16 @@ use tables::{Row, missed, number, report, rows};
 
 const TABLE: &str = include_str!("reference/sample_sizes.csv");
 
-fn plan(row: &Row) -> String {
+/// The plan of a row with a size, `smallest` or a number.
+fn plan(row: &Row, size: &str) -> String {
     let space = match row.get("family") {
         "poisson" => "lambda >= 0".to_owned(),
         "hypergeometric" => format!("0 <= D <= {}", row.setup("lot").unwrap()),
         _ => "0 <= p <= 1".to_owned(),
     };
     let size = match row.get("family") {
-        "negative_binomial" => "  stop_at: {nonconforming: smallest}\n",
-        _ => "  sample_size: smallest\n",
+        "negative_binomial" => format!("  stop_at: {{nonconforming: {size}}}\n"),
+        _ => format!("  sample_size: {size}\n"),
     };
     let mut text = format!(
         "assize: 1\nplan: {{id: {}, revision: A, title: Reference}}\n\
@@ -35,7 +36,7 @@ fn plan(row: &Row) -> String {
     if !row.get("given_region").is_empty() {
         text += &format!("  critical_region: {}\n", row.get("given_region"));
     }
-    if row.get("family") == "poisson" {
+    if row.get("family") == "poisson" && size.contains("smallest") {
         let step = if row.get("step").is_empty() {
             "1"
         } else {
@@ -113,7 +114,7 @@ fn every_smallest_size_is_the_one_found_by_trying_all() {
             row.get("requirements"),
             row.get("given_region")
         );
-        let compilation = compile(&plan(&row), &Silent).unwrap();
+        let compilation = compile(&plan(&row, "smallest"), &Silent).unwrap();
         let Some(record) = compilation.record else {
             findings.push(format!("{head}: no record, {:?}", compilation.diagnostics));
             continue;
@@ -125,6 +126,57 @@ fn every_smallest_size_is_the_one_found_by_trying_all() {
                     .into_iter()
                     .map(|difference| format!("{head}: {difference}")),
             ),
+        }
+    }
+    report(&findings);
+}
+
+/// Whether a stated size meets the level and every requirement.
+fn works(row: &Row, size: &str) -> bool {
+    let compilation = compile(&plan(row, size), &Silent).unwrap();
+    compilation.record.is_some_and(|record| {
+        record.size.within_level && record.requirements.iter().all(|result| result.met)
+    })
+}
+
+/// The sizes to try: one less than the first, both ends of every stretch that fails, and the neighbours that work.
+fn tried(row: &Row) -> Vec<(String, bool)> {
+    let mut sizes = vec![
+        (row.get("smallest").to_owned(), true),
+        (row.get("every_from").to_owned(), true),
+    ];
+    let less = row
+        .get("smallest")
+        .parse::<u64>()
+        .map_or(0, |first| first - 1);
+    if less > 0 && row.get("step").is_empty() {
+        sizes.push((less.to_string(), false));
+    }
+    for stretch in row
+        .get("failing_between")
+        .split(' ')
+        .filter(|text| !text.is_empty())
+    {
+        let ends = stretch.split_once('-').unwrap_or((stretch, stretch));
+        sizes.push((ends.0.to_owned(), false));
+        sizes.push((ends.1.to_owned(), false));
+    }
+    sizes
+}
+
+#[test]
+fn sizes_between_the_first_and_the_settled_one_fail_where_the_table_says_so() {
+    let mut findings = Vec::new();
+    for row in rows(TABLE, 40) {
+        for (size, good) in tried(&row) {
+            if works(&row, &size) != good {
+                let word = if good { "fails" } else { "works" };
+                findings.push(format!(
+                    "{} {}: {size} {word}",
+                    row.get("id"),
+                    row.get("null_subset")
+                ));
+            }
         }
     }
     report(&findings);

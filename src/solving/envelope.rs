@@ -273,8 +273,8 @@ fn balanced_range(
     observed: &Value,
     alpha: &Level,
 ) -> Result<(u64, u64), Obstacle> {
-    let (low, high) = operating.outcomes();
-    let high = high.unwrap_or(1 << 40);
+    let (low, _) = operating.outcomes();
+    let high = operating.search_end([a, b]);
     // Along the statistic: the neighbour below makes it small, the one above large.
     let (small, large) = if operating.is_rising() {
         (a, b)

@@ -18,6 +18,8 @@ use super::judgement::{Level, over_tries};
 use super::obstacle::Obstacle;
 use super::operating::{Operating, last_true};
 
+/// A power below this is that of a test that never rejects.
+const NEVER: f64 = 1e-15;
 /// Most inner ranges compared before the search gives up.
 const MOST_CANDIDATES: u64 = 200_000;
 /// Largest sample for which inner ranges are compared.
@@ -90,7 +92,7 @@ pub fn inner_region(
         middle,
         wanted,
         first,
-        last: last.unwrap_or(1 << 40),
+        last: operating.search_end([low, high]),
     };
     search.best()
 }
@@ -179,12 +181,14 @@ impl InnerSearch<'_, '_> {
         Ok(found)
     }
 
-    /// Where nothing fits around the middle, single outcomes may still fit: they are all looked at.
+    /// Where nothing fits around the middle, single outcomes may still fit: all are looked at that the middle or a
+    /// requirement gives any chance. Under an endless law ranges farther out fit every level, as all their probabilities
+    /// vanish; a test that never rejects is none.
     fn smallest_ranges(&self) -> Result<Vec<Inner>, Obstacle> {
         let mut found: Vec<Inner> = Vec::new();
         let last = self.last.min(self.first + MOST_CANDIDATES);
         for from in self.first..=last {
-            if self.bound_from(from) < -1.0 + CLOSE && from > self.first + 64 {
+            if self.is_hopeless_from(from) {
                 break;
             }
             if let Some(to) = self.farthest(from, from)?
@@ -194,6 +198,13 @@ impl InnerSearch<'_, '_> {
             }
         }
         Ok(found)
+    }
+
+    /// Whether no range that starts here has a chance worth the name at any point that counts.
+    fn is_hopeless_from(&self, from: u64) -> bool {
+        let tail = Region::at_least(Some(from));
+        let never = |law: &Law| self.rejection(law, &tail).upper() < NEVER;
+        never(&self.law_in_middle) && self.wanted.iter().all(|(law, _)| never(law))
     }
 
     /// A maximal range that holds the centre, if one fits.

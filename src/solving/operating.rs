@@ -44,6 +44,19 @@ impl<'a> Operating<'a> {
         }
     }
 
+    /// A count beyond which no search for inner ranges need go: the last outcome, or far beyond where the statistic lies at
+    /// both values. A range that reached it under an endless law would hold nearly all outcomes of some null point.
+    pub fn search_end(&self, values: [&Value; 2]) -> u64 {
+        let (first, last) = self.outcomes();
+        let expected = values.map(|value| self.problem.family.expected_count(value, &self.amount));
+        let farthest = 64.0 * (expected[0].max(expected[1]) + 64.0);
+        last.unwrap_or(if farthest < UNBOUNDED as f64 {
+            (farthest as u64).max(first + 1)
+        } else {
+            UNBOUNDED
+        })
+    }
+
     /// Probability that one try falls into the region, at an observed value.
     pub fn single(&self, region: &Region, observed: &Value) -> Enclosure {
         ratio_sum::probability(&self.law(observed), region)

@@ -19,6 +19,7 @@ from region_search import (
     inner_size,
     joint_tails,
     one_sided,
+    peak,
     randomised_inner,
     randomised_tail,
 )
@@ -272,7 +273,7 @@ def solve(problem):
         wanted = [(where, line.comparable(at_least)) for where, at_least in sets]
         region = inner_region(line, low, high, level, wanted, midpoint)
     size, at = supremum(line, problem, region, low, high)
-    assert size <= level
+    assert real(size) <= real(level)
     assert line.observation.rational(line.last) or abs(real(size) - real(level)) > mpmath.mpf(10) ** -60
     row = {
         "family": problem["family"],
@@ -301,12 +302,13 @@ def requirement(problem, where, at_least):
 
 
 def supremum(line, problem, region, low, high):
-    """The largest probability of the region over the null, and the end where it is (empty if at both)."""
+    """The largest probability of the region over the null, and the end where it is (empty if at both, or inside)."""
     if not region:
         return mpq(0), None
     if problem["shape"] == "outside":
         size, at = inner_size(line, low, high, *region[0])
-        assert size is not None, "the chosen range peaks beyond a limit"
+        if size is None:
+            return peak(line, *region[0]), None
         both = line.chance(low, region) == line.chance(high, region)
         return size, None if both else at
     at_low, at_high = line.chance(low, region), line.chance(high, region)
@@ -333,8 +335,8 @@ def envelope(line, problem, point, low, high, level):
 
 if __name__ == "__main__":
     table = []
-    for family in (binomial, hypergeometric, poisson, negative_binomial):
-        for problem in family():
+    for problems in (binomial(), hypergeometric(), poisson(), negative_binomial()):
+        for problem in problems:
             row = {"id": f"R{len(table) + 1:03}"}
             row.update(solve(problem))
             print(row["id"], row["family"], row["setup"], row["null_subset"], row["alpha"], row["region"], row["size"][:10])
