@@ -357,6 +357,14 @@ fn unreachable_level(operating: &Operating<'_>, progress: &dyn Progress) -> Obst
     let candidates = match &problem.shape {
         Shape::Below { .. } => low..=low,
         Shape::Above { .. } => last..=last,
+        // Outcomes far beyond both null points keep any level, and say nothing about the alternative.
+        Shape::Around { low: a, high: b } => {
+            let near = |end: &Value| {
+                let count = problem.family.expected_count(end, &operating.amount);
+                (count.min(last as f64) as u64).clamp(low, last)
+            };
+            near(a)..=near(b)
+        }
         _ => low..=last,
     };
     let size_of = |count: u64| {
