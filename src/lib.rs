@@ -50,13 +50,26 @@ pub fn compile(text: &str, progress: &dyn Progress) -> Result<Compilation, Inter
     let mut diagnostics = reading.diagnostics;
     let record = match reading.plan {
         Some(plan) => record_of(&plan, &mut diagnostics, progress)?,
-        None => None,
+        None => {
+            // One run tells all: sets that were read are held against each other, whatever else is wrong.
+            if let Some(Err(found)) = reading.doubtful.filter(has_its_lot).map(|plan| pose(&plan)) {
+                diagnostics.extend(found);
+                diagnostics.dedup();
+            }
+            None
+        }
     };
     diagnostics.sort_by_key(|found| found.span);
     Ok(Compilation {
         record,
         diagnostics,
     })
+}
+
+/// Whether the lot that the family's parameter refers to is known.
+fn has_its_lot(plan: &Plan) -> bool {
+    let finite = family::registration(&plan.test.family.value).is_some_and(|f| f.finite_lot);
+    !finite || plan.test.lot_size.is_some()
 }
 
 /// All findings about a plan, those that need solving included.

@@ -40,6 +40,8 @@ const DESCRIPTIVE: [&str; 10] = [
 pub struct Reading {
     /// The plan, unless there was an error.
     pub plan: Option<Plan>,
+    /// What could be read of a plan with errors, as far as its test goes: good for finding more errors, never for solving.
+    pub doubtful: Option<Plan>,
     /// Errors and cautions, in the order of the text.
     pub diagnostics: Vec<Diagnostic>,
 }
@@ -59,9 +61,18 @@ pub fn read(text: &str) -> Reading {
     }
     diagnostics.sort_by_key(|found| found.span);
     diagnostics.dedup();
-    let plan = plan.filter(|_| !diagnostics.iter().any(Diagnostic::is_error));
+    let sound = !diagnostics.iter().any(Diagnostic::is_error);
     cap(&mut diagnostics);
-    Reading { plan, diagnostics }
+    let (plan, doubtful) = match plan {
+        Some((plan, complete)) if complete && sound => (Some(plan), None),
+        Some((plan, _)) => (None, Some(plan)),
+        None => (None, None),
+    };
+    Reading {
+        plan,
+        doubtful,
+        diagnostics,
+    }
 }
 
 /// Nobody reads more than [`MOST_FINDINGS`]; errors are kept before cautions.
@@ -83,7 +94,8 @@ fn cap(diagnostics: &mut Vec<Diagnostic>) {
     }
 }
 
-fn from_tree(text: &str, tree: &Node, fields: &mut Fields<'_>) -> Option<Plan> {
+/// The plan and whether all of it was there.
+fn from_tree(text: &str, tree: &Node, fields: &mut Fields<'_>) -> Option<(Plan, bool)> {
     let start = Span {
         line: tree.span.line,
         column: tree.span.column,
@@ -139,7 +151,7 @@ fn values(
     (test, requirements): (Option<Test>, Vec<Requirement>),
     start: Span,
     fields: &mut Fields<'_>,
-) -> Option<Plan> {
+) -> Option<(Plan, bool)> {
     let identity = tree.get("plan");
     let of = |key: &str| identity.and_then(|plan| plan.get(key));
     let id = fields.identifier(of("id"), "the plan number");
@@ -155,15 +167,32 @@ fn values(
         tree.get("report").and_then(|report| report.get("power_at")),
     );
     let waivers = waivers(fields, tree.get("waive"));
-    Some(Plan {
+    let complete = id.is_some()
+        && revision.is_some()
+        && title.is_some()
+        && characteristic.is_some()
+        && decision.is_some();
+    // Stands in for what is missing, so that the sets can still be held against each other.
+    let nothing = || Located::new(String::new(), start);
+    let plan = Plan {
         text: text.to_owned(),
-        id: id?,
-        revision: revision?,
-        title: title?,
-        characteristic: characteristic?,
+        id: id.unwrap_or_else(nothing),
+        revision: revision.unwrap_or_else(nothing),
+        title: title.unwrap_or_else(nothing),
+        characteristic: characteristic.unwrap_or_else(|| Characteristic {
+            name: nothing(),
+            counts: None,
+            measures: None,
+            unit: None,
+            hazard: None,
+        }),
         test: test?,
         requirements,
-        decision: decision?,
+        decision: decision.unwrap_or_else(|| Decision {
+            accept_when: Located::new(AcceptWhen::NullRejected, start),
+            if_rejected: None,
+            if_retained: None,
+        }),
         power_at,
         waivers,
         declared: declared(tree),
@@ -173,7 +202,8 @@ fn values(
             .map(|entry| (entry.key.value.clone(), entry.key.span))
             .collect(),
         start,
-    })
+    };
+    Some((plan, complete))
 }
 
 fn supersedes(fields: &mut Fields<'_>, node: Option<&Node>, revision: Option<&Located<String>>) {
